@@ -1,0 +1,85 @@
+import type { CoachStep, Outcome, Proposal, RunHistory, RunReading, TrialReading, TrialRecord } from '../coach/step.ts';
+import type { Samples } from '../record/samples.ts';
+import type { Signature } from '../safety/hazard.ts';
+import { breathe } from './edge.ts';
+import type { Failure } from './failure.ts';
+
+/** What answers the output: the profile's physics, a model fitted to logs, a command. */
+export interface TrialPlant {
+  readonly run: (proposal: Proposal, trial: number) => Promise<PlantAnswer>;
+}
+
+export type PlantAnswer =
+  | { readonly kind: 'log'; readonly samples: Samples }
+  | { readonly kind: 'failed'; readonly failure: Failure }
+  | { readonly kind: 'interrupted' };
+
+/** May this trial be run? Asked before each; simulated plants always may. */
+export type Admission =
+  | { readonly open: true; readonly signature: Signature | null }
+  | { readonly open: false; readonly failure: Failure }
+  | { readonly open: 'interrupted' };
+
+/** What happens in a run, told as it happens. */
+export type RunEvent =
+  | { readonly kind: 'proposed'; readonly proposal: Proposal; readonly trial: number }
+  | { readonly kind: 'read'; readonly record: TrialRecord; readonly reading: TrialReading };
+
+export interface RunTrials {
+  readonly history: RunHistory;
+  /** The coach: `nextStep` of src/coach. */
+  readonly next: (history: RunHistory) => CoachStep;
+  readonly plant: TrialPlant;
+  readonly admit: (proposal: Proposal, history: RunHistory, trial: number) => Promise<Admission>;
+  /** Keeps a trial that was run; called before anything else is done with it. */
+  readonly keep: (record: TrialRecord, proposal: Proposal, signature: Signature | null) => Promise<void>;
+  readonly tell: (event: RunEvent) => void;
+  readonly interrupted: AbortSignal;
+}
+
+/** How a run ended. Trials that were run are in the history and kept, however it ended. */
+export type RunEnd = { readonly history: RunHistory } & (
+  | { readonly kind: 'stopped'; readonly outcome: Outcome; readonly reading: RunReading }
+  | { readonly kind: 'failed'; readonly failure: Failure; readonly during: Proposal }
+  | { readonly kind: 'interrupted' }
+);
+
+/**
+ * The whole procedure without a person: history → next step → plant → history, until the coach stops it, a plant fails
+ * or a trial is refused. Interruption is seen between trials and by the plant itself; nothing that was run is lost.
+ */
+export async function runTrials(run: RunTrials): Promise<RunEnd> {
+  let history = run.history;
+  let told = history.trials.length;
+  while (true) {
+    await breathe();
+    if (run.interrupted.aborted) return { kind: 'interrupted', history };
+    const step = run.next(history);
+    const last = history.trials.at(-1);
+    const reading = step.reading.trials.at(-1);
+    if (last && reading && history.trials.length > told) {
+      told = history.trials.length;
+      run.tell({ kind: 'read', record: last, reading });
+    }
+    if (step.kind === 'stop') return { kind: 'stopped', outcome: step.outcome, reading: step.reading, history };
+    const { proposal } = step;
+    const trial = (last?.trial ?? 0) + 1;
+    await breathe();
+    if (run.interrupted.aborted) return { kind: 'interrupted', history };
+    run.tell({ kind: 'proposed', proposal, trial });
+    const admission = await run.admit(proposal, history, trial);
+    if (admission.open === 'interrupted') return { kind: 'interrupted', history };
+    if (!admission.open) return { kind: 'failed', failure: admission.failure, during: proposal, history };
+    const answer = await run.plant.run(proposal, trial);
+    if (answer.kind === 'interrupted') return { kind: 'interrupted', history };
+    if (answer.kind === 'failed') return { kind: 'failed', failure: answer.failure, during: proposal, history };
+    const record = recordOf(proposal, trial, answer.samples);
+    await run.keep(record, proposal, admission.signature);
+    history = { ...history, trials: [...history.trials, record] };
+  }
+}
+
+function recordOf(proposal: Proposal, trial: number, samples: Samples): TrialRecord {
+  const { stage, gains, move, outputCap, band } = proposal;
+  return { trial, stage, gains, move, outputCap, samples, band };
+}
