@@ -1,4 +1,4 @@
-import { type Loop, restState, tick } from './tick.ts';
+import { createController, type Loop, tick } from './tick.ts';
 
 /** The output and its parts that a controller must have sent, in the controller's output unit. */
 export interface RebuiltOutput {
@@ -22,13 +22,13 @@ export function rebuildOutput(
   const rows = time.length;
   const output = new Float64Array(rows);
   const parts = { p: new Float64Array(rows), i: new Float64Array(rows), d: new Float64Array(rows) };
-  const state = restState();
+  const controller = createController(loop);
   for (let row = 0; row < rows; row++) {
     const speed = setpointSpeed?.[row] ?? 0;
-    output[row] = tick(loop, state, time[row] ?? 0, setpoint[row] ?? 0, measured[row] ?? 0, speed);
-    parts.p[row] = state.p;
-    parts.i[row] = state.i;
-    parts.d[row] = state.d;
+    output[row] = tick(controller, time[row] ?? 0, setpoint[row] ?? 0, measured[row] ?? 0, speed);
+    parts.p[row] = controller.p;
+    parts.i[row] = controller.i;
+    parts.d[row] = controller.d;
   }
   return { output, parts };
 }

@@ -18,8 +18,33 @@ export interface Loop {
   readonly outputCap: number;
 }
 
-/** What a controller remembers from tick to tick, and what its terms last gave; changed in place by {@link tick}. */
-export interface TickState {
+/**
+ * A controller between two ticks: its law laid flat (a bound that does not exist is Infinity), and what it remembers. Changed in
+ * place by {@link tick}, only; a search ticks it millions of times a second, so nothing is looked up or allocated there.
+ */
+export interface Controller {
+  readonly kp: number;
+  readonly ki: number;
+  readonly kd: number;
+  readonly zone: number;
+  readonly resetsOutside: boolean;
+  /** Largest |sum|. */
+  readonly mostSum: number;
+  readonly onMeasured: boolean;
+  readonly filter: number;
+  readonly hold: number;
+  /** Reading at which the hold term is whole, and radians in a unit from there; 0 rad = a constant hold term. */
+  readonly level: number;
+  readonly radiansPerUnit: number;
+  readonly pace: number;
+  readonly pacesSetpoint: boolean;
+  /** Output unit per second. */
+  readonly slew: number;
+  readonly low: number;
+  readonly high: number;
+  /** Infinity = the quantity does not wrap. */
+  readonly wrap: number;
+  readonly period: number;
   /** s; NaN before the first tick. */
   time: number;
   error: number;
@@ -28,16 +53,12 @@ export interface TickState {
   sum: number;
   /** Filtered derivative. */
   derivative: number;
-  /** Output unit, as sent. */
+  /** As last sent, output unit. */
   output: number;
+  /** What the three terms last added, output unit. */
   p: number;
   i: number;
   d: number;
-}
-
-/** A controller before its first tick: sum at zero, output at zero. */
-export function restState(): TickState {
-  return { time: Number.NaN, error: 0, measured: 0, sum: 0, derivative: 0, output: 0, p: 0, i: 0, d: 0 };
 }
 
 /** Error wrapped to ± half the wrap width; exactly half a turn stays as it is. */
@@ -46,15 +67,45 @@ export function wrapError(error: number, continuous: number | null): number {
   return error - continuous * Math.round(error / continuous);
 }
 
-/** The output the hold term adds at reading `measured`, output unit. */
-export function holdTerm(hold: number, shape: HoldShape, measured: number): number {
-  return shape.kind === 'cosine' ? hold * Math.cos((measured - shape.level) * shape.radiansPerUnit) : hold;
-}
-
 /** Lowest and highest output that may be sent, output unit: the controller's own range inside ± the cap. */
 export function outputRange(settings: ControllerSettings, outputCap: number): readonly [low: number, high: number] {
   const cap = outputCap * fullOutput(settings);
   return [Math.max(settings.output.min, -cap), Math.min(settings.output.max, cap)];
+}
+
+/** A controller before its first tick: sum at zero, output at zero. */
+export function createController(loop: Loop): Controller {
+  const { settings, gains, holdShape } = loop;
+  const [low, high] = outputRange(settings, loop.outputCap);
+  return {
+    kp: gains.kp,
+    ki: gains.ki,
+    kd: gains.kd,
+    zone: gains.zone ?? Number.POSITIVE_INFINITY,
+    resetsOutside: settings.outsideZone === 'reset',
+    mostSum: settings.sumLimit === null ? Number.POSITIVE_INFINITY : settings.sumLimit / Math.abs(gains.ki),
+    onMeasured: settings.derivativeOn === 'measured',
+    filter: settings.derivativeFilter,
+    hold: gains.hold,
+    level: holdShape.kind === 'cosine' ? holdShape.level : 0,
+    radiansPerUnit: holdShape.kind === 'cosine' ? holdShape.radiansPerUnit : 0,
+    pace: gains.pace,
+    pacesSetpoint: loop.quantity === 'speed',
+    slew: settings.slew ?? Number.POSITIVE_INFINITY,
+    low,
+    high,
+    wrap: loop.continuous ?? Number.POSITIVE_INFINITY,
+    period: settings.period,
+    time: Number.NaN,
+    error: 0,
+    measured: 0,
+    sum: 0,
+    derivative: 0,
+    output: 0,
+    p: 0,
+    i: 0,
+    d: 0,
+  };
 }
 
 /**
@@ -65,49 +116,39 @@ export function outputRange(settings: ControllerSettings, outputCap: number): re
  * @param setpoint profile unit
  * @param measured the sensor's last reading, profile unit
  * @param setpointSpeed unit/s of a shaped move, 0 for a step; a speed loop's pace acts on the setpoint itself instead
- * @returns output, output unit, held until the next tick; `state` also keeps the terms' parts
+ * @returns output, output unit, held until the next tick
  */
-export function tick(
-  loop: Loop,
-  state: TickState,
-  time: number,
-  setpoint: number,
-  measured: number,
-  setpointSpeed: number,
-): number {
-  const { settings, gains } = loop;
-  const error = wrapError(setpoint - measured, loop.continuous);
-  const isFirst = Number.isNaN(state.time);
-  const dt = isFirst ? 0 : time - state.time;
+export function tick(c: Controller, time: number, setpoint: number, measured: number, setpointSpeed: number): number {
+  let error = setpoint - measured;
+  if (Math.abs(error) > 0.5 * c.wrap) error -= c.wrap * Math.round(error / c.wrap);
+  const dt = time - c.time; // NaN at the first tick, so every comparison with it fails
 
-  if (gains.zone === null || Math.abs(error) < gains.zone) state.sum += error * dt;
-  else if (settings.outsideZone === 'reset') state.sum = 0;
-  if (settings.sumLimit !== null) {
-    const most = settings.sumLimit / Math.abs(gains.ki);
-    if (state.sum > most) state.sum = most;
-    else if (state.sum < -most) state.sum = -most;
-  }
   if (dt > 0) {
-    const slope = settings.derivativeOn === 'error' ? (error - state.error) / dt : (state.measured - measured) / dt;
-    const filter = settings.derivativeFilter;
-    state.derivative = filter > 0 ? state.derivative + ((slope - state.derivative) * dt) / (filter + dt) : slope;
+    const outside = Math.abs(error) >= c.zone;
+    let sum = outside ? (c.resetsOutside ? 0 : c.sum) : c.sum + error * dt;
+    if (Math.abs(sum) > c.mostSum) sum = sum > 0 ? c.mostSum : -c.mostSum;
+    c.sum = sum;
+    // 1/dt does not wait for the reading: a processor has it ready when the difference arrives.
+    const slope = (c.onMeasured ? c.measured - measured : error - c.error) * (1 / dt);
+    c.derivative = c.filter > 0 ? c.derivative + (slope - c.derivative) * (dt / (c.filter + dt)) : slope;
   }
+  c.p = c.kp * error;
+  c.i = c.ki * c.sum;
+  c.d = c.kd * c.derivative;
+  let output = c.p + (c.i + c.d) + c.pace * (c.pacesSetpoint ? setpoint : setpointSpeed);
+  output += c.radiansPerUnit === 0 ? c.hold : c.hold * Math.cos((measured - c.level) * c.radiansPerUnit);
+  if (c.slew < Number.POSITIVE_INFINITY) output = slewed(c, output, dt >= 0 ? dt : c.period);
+  if (output > c.high) output = c.high;
+  else if (output < c.low) output = c.low;
 
-  state.p = gains.kp * error;
-  state.i = gains.ki * state.sum;
-  state.d = gains.kd * state.derivative;
-  const pace = gains.pace * (loop.quantity === 'speed' ? setpoint : setpointSpeed);
-  let output = state.p + state.i + state.d + holdTerm(gains.hold, loop.holdShape, measured) + pace;
-  if (settings.slew !== null) {
-    const most = settings.slew * (isFirst ? settings.period : dt);
-    output = Math.max(state.output - most, Math.min(state.output + most, output));
-  }
-  const [low, high] = outputRange(settings, loop.outputCap);
-  output = Math.max(low, Math.min(high, output));
-
-  state.time = time;
-  state.error = error;
-  state.measured = measured;
-  state.output = output;
+  c.time = time;
+  c.error = error;
+  c.measured = measured;
+  c.output = output;
   return output;
+}
+
+function slewed(c: Controller, output: number, dt: number): number {
+  const most = c.slew * dt;
+  return Math.max(c.output - most, Math.min(c.output + most, output));
 }

@@ -1,6 +1,5 @@
-import { type ArmMotion, advanceArm } from './arm.ts';
+import { type ArmMotion, advanceArm, startArm } from './arm.ts';
 import type { Coupling, PlantModel } from './response-model.ts';
-import { rigidLawOf } from './rigid-law.ts';
 
 /** Two masses with lost motion or a spring between; `position` and `speed` are the load's, which is what is measured. */
 export interface CoupledMotion {
@@ -17,13 +16,11 @@ export function startCoupled(
 ): CoupledMotion {
   const { gravity } = plant;
   return {
-    arm: {
-      law: rigidLawOf(plant),
-      weight: gravity.kind === 'cosine' ? plant.response.hold : 0,
-      level: gravity.kind === 'cosine' ? gravity.level : 0,
-      radiansPerUnit: gravity.kind === 'cosine' ? gravity.radiansPerUnit : 0,
-      ...start,
-    },
+    arm: startArm(
+      plant,
+      gravity.kind === 'cosine' ? gravity : { kind: 'cosine', level: 0, radiansPerUnit: 1e-9 },
+      start,
+    ),
     ...start,
   };
 }

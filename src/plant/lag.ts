@@ -7,30 +7,36 @@ export function lagShare(z: number): number {
   return -Math.expm1(-z);
 }
 
+// Power series of 1 − (1 − e^(−z))/z, over z: 1/2! − z/3! + z²/4! − …; ten terms reach 1e-17 relative at z = 0.1.
+const SERIES = [
+  1 / 2,
+  -1 / 6,
+  1 / 24,
+  -1 / 120,
+  1 / 720,
+  -1 / 5040,
+  1 / 40320,
+  -1 / 362880,
+  1 / 3628800,
+  -1 / 39916800,
+];
+const SERIES_UP_TO = 0.1;
+
 /**
  * Mean of {@link lagShare} from 0 to `z`: 1 − (1 − e^(−z))/z. Times (end − start)·time it is the distance that a lagging
  * speed adds to that of its start value.
  *
- * Below z = 0.1 the closed form would cancel (a large lag with a large top speed is a constant acceleration, and its
- * distance must not drown in rounding), so the power series is summed there; 10 terms reach 1e-17 relative.
+ * For small z the closed form would cancel (a long lag with a high top speed is a constant acceleration, and its distance must
+ * not drown in rounding), so the power series is summed there.
  *
- * @param z time over time constant, 0 to Infinity
+ * @param z time over time constant, > 0, to Infinity
+ * @param share lagShare(z), where it is at hand
  */
-export function meanLagShare(z: number): number {
-  if (z > 0.1) return 1 + Math.expm1(-z) / z;
-  return (
-    z *
-    (1 / 2 -
-      z *
-        (1 / 6 -
-          z *
-            (1 / 24 -
-              z *
-                (1 / 120 -
-                  z *
-                    (1 / 720 -
-                      z * (1 / 5040 - z * (1 / 40320 - z * (1 / 362880 - z * (1 / 3628800 - z * (1 / 39916800))))))))))
-  );
+export function meanLagShare(z: number, share: number = lagShare(z)): number {
+  if (z > SERIES_UP_TO) return 1 - share / z;
+  let sum = 0;
+  for (let k = SERIES.length - 1; k >= 0; k--) sum = sum * z + (SERIES[k] ?? 0);
+  return sum * z;
 }
 
 /**

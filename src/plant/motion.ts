@@ -1,7 +1,7 @@
 import { type ArmMotion, advanceArm, startArm } from './arm.ts';
 import { advanceCoupled, type CoupledMotion, startCoupled } from './coupled.ts';
 import type { PlantModel } from './response-model.ts';
-import { advanceRigid, type RigidMotion } from './rigid.ts';
+import { advanceRigid, type RigidMotion, startRigid } from './rigid.ts';
 import { rigidLawOf } from './rigid-law.ts';
 
 /** Where a mechanism starts; for a speed loop `speed` is the quantity itself and `position` its integral. */
@@ -12,18 +12,19 @@ export interface Start {
 
 /** A mechanism in motion, whatever solver it needs: read `position` and `speed`, change it only by {@link advance}. */
 export type Motion =
-  | ({ readonly solver: 'exact' } & RigidMotion)
-  | ({ readonly solver: 'arm' } & ArmMotion)
-  | ({ readonly solver: 'coupled' } & CoupledMotion);
+  | { readonly solver: 'exact'; readonly state: RigidMotion }
+  | { readonly solver: 'arm'; readonly state: ArmMotion }
+  | { readonly solver: 'coupled'; readonly state: CoupledMotion };
 
 /**
  * Puts a plant at its start. Constant weight on one rigid mass is solved in closed form; weight that turns with the
  * joint, backlash and compliance are solved in sub-steps.
  */
 export function startMotion(plant: PlantModel, start: Start): Motion {
-  if (plant.coupling) return { solver: 'coupled', ...startCoupled(plant, plant.coupling, start) };
-  if (plant.gravity.kind === 'cosine') return { solver: 'arm', ...startArm(plant, plant.gravity, start) };
-  return { solver: 'exact', law: rigidLawOf(plant), position: start.position, speed: start.speed };
+  const { coupling, gravity } = plant;
+  if (coupling) return { solver: 'coupled', state: startCoupled(plant, coupling, start) };
+  if (gravity.kind === 'cosine') return { solver: 'arm', state: startArm(plant, gravity, start) };
+  return { solver: 'exact', state: startRigid(rigidLawOf(plant), start.position, start.speed) };
 }
 
 /**
@@ -33,7 +34,7 @@ export function startMotion(plant: PlantModel, start: Start): Motion {
  * @param duration s, ≥ 0
  */
 export function advance(motion: Motion, output: number, duration: number): void {
-  if (motion.solver === 'exact') advanceRigid(motion, output, duration);
-  else if (motion.solver === 'arm') advanceArm(motion, output, duration);
-  else advanceCoupled(motion, output, duration);
+  if (motion.solver === 'exact') advanceRigid(motion.state, output, duration);
+  else if (motion.solver === 'arm') advanceArm(motion.state, output, duration);
+  else advanceCoupled(motion.state, output, duration);
 }

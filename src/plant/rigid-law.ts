@@ -17,35 +17,40 @@ import type { PlantModel } from './response-model.ts';
 export interface RigidLaw {
   readonly topSpeed: number;
   readonly lag: number;
-  readonly drag: number;
-  readonly dragBack: number;
-  /** Never below drag: what starts a mechanism also keeps it moving. */
-  readonly breakaway: number;
-  readonly breakawayBack: number;
   /** Constant weight; 0 for an arm, whose weight varies with position. */
   readonly hold: number;
+  /** Force that opposes motion forward, hold + drag, and back, hold − dragBack. */
+  readonly againstForward: number;
+  readonly againstBack: number;
+  /** Force above which it sets off forward, and below which back. Never inside the drag: what starts it keeps it moving. */
+  readonly startForward: number;
+  readonly startBack: number;
   readonly min: number;
   readonly max: number;
   readonly sag: number;
   /** Infinity when the current is not limited. */
   readonly limit: number;
+  /** Neither sag nor limit: the force is u − w at every speed. */
+  readonly isPlain: boolean;
 }
 
 /** Lays out a plant's numbers; bounds that do not exist become infinities. */
 export function rigidLawOf(plant: PlantModel): RigidLaw {
-  const { response, stops } = plant;
+  const { response, stops, sag, forceLimit } = plant;
+  const hold = plant.gravity.kind === 'constant' ? response.hold : 0;
   return {
     topSpeed: response.topSpeed,
     lag: response.lag,
-    drag: response.drag,
-    dragBack: response.dragBack,
-    breakaway: Math.max(response.breakaway, response.drag),
-    breakawayBack: Math.max(response.breakawayBack, response.dragBack),
-    hold: plant.gravity.kind === 'constant' ? response.hold : 0,
+    hold,
+    againstForward: hold + response.drag,
+    againstBack: hold - response.dragBack,
+    startForward: hold + Math.max(response.breakaway, response.drag),
+    startBack: hold - Math.max(response.breakawayBack, response.dragBack),
     min: stops.min ?? Number.NEGATIVE_INFINITY,
     max: stops.max ?? Number.POSITIVE_INFINITY,
-    sag: plant.sag,
-    limit: plant.forceLimit ?? Number.POSITIVE_INFINITY,
+    sag,
+    limit: forceLimit ?? Number.POSITIVE_INFINITY,
+    isPlain: sag === 0 && forceLimit === null,
   };
 }
 
@@ -55,13 +60,72 @@ export function stallForce(law: RigidLaw, u: number): number {
   return Math.max(-law.limit, Math.min(law.limit, force));
 }
 
+/** The motor's force at speed `v` under output `u`. */
+export function motorForce(law: RigidLaw, u: number, v: number): number {
+  const slip = u - v / law.topSpeed;
+  const force = slip * u > 0 ? slip / (1 + law.sag * u * u) : slip;
+  return Math.max(-law.limit, Math.min(law.limit, force));
+}
+
 /**
- * Which way a mechanism at rest at `x` sets off under output `u` against weight `hold`: 1, −1, or 0 when friction or a
- * stop keeps it. Exactly at breakaway it stays.
+ * Which way a mechanism at rest at `x` sets off under output `u` when `extra` weight comes on top of the law's own: 1, −1,
+ * or 0 when friction or a stop keeps it. Exactly at breakaway it stays.
  */
-export function startDirection(law: RigidLaw, u: number, x: number, hold: number): number {
-  const net = stallForce(law, u) - hold;
-  if (net > law.breakaway) return x < law.max ? 1 : 0;
-  if (net < -law.breakawayBack) return x > law.min ? -1 : 0;
+export function startDirection(law: RigidLaw, u: number, x: number, extra: number): number {
+  const net = stallForce(law, u) - extra;
+  if (net > law.startForward) return x < law.max ? 1 : 0;
+  if (net < law.startBack) return x > law.min ? -1 : 0;
   return 0;
+}
+
+/**
+ * The stretch of speeds around some speed over which the motor's force is one straight line. Filled by {@link findPiece}.
+ */
+export interface Piece {
+  /** Force lost per topSpeed of speed: 1, φ, or 0 at the current limit. */
+  slope: number;
+  /** Motor's force at that speed. */
+  force: number;
+  low: number;
+  high: number;
+}
+
+/** An empty piece, to be filled. */
+export function newPiece(): Piece {
+  return { slope: Number.NaN, force: Number.NaN, low: Number.NaN, high: Number.NaN };
+}
+
+/**
+ * Finds the piece in which the speed is about to move; on an edge that is the one it moves into.
+ *
+ * @param against force that opposes the motor's: whatever remains speeds it up
+ */
+export function findPiece(piece: Piece, law: RigidLaw, u: number, v: number, against: number): void {
+  const { topSpeed, limit } = law;
+  if (law.isPlain) {
+    piece.force = u - v / topSpeed;
+    setPiece(piece, 1, Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY);
+    return;
+  }
+  const phi = 1 / (1 + law.sag * u * u);
+  // The force falls with speed by φ on the side of u·topSpeed where the motor drives, by 1 where it returns current.
+  const below = u > 0 ? phi : 1;
+  const above = u < 0 ? phi : 1;
+  const limited = topSpeed * (u - limit / below);
+  const free = topSpeed * u;
+  const limitedBack = topSpeed * (u + limit / above);
+  piece.force = motorForce(law, u, v);
+  const isRising = piece.force >= against;
+  if (v < limited || (v === limited && !isRising)) setPiece(piece, 0, Number.NEGATIVE_INFINITY, limited);
+  else if (v > limitedBack || (v === limitedBack && isRising))
+    setPiece(piece, 0, limitedBack, Number.POSITIVE_INFINITY);
+  else if (phi === 1) setPiece(piece, 1, limited, limitedBack);
+  else if (v < free || (v === free && !isRising)) setPiece(piece, below, limited, free);
+  else setPiece(piece, above, free, limitedBack);
+}
+
+function setPiece(piece: Piece, slope: number, low: number, high: number): void {
+  piece.slope = slope;
+  piece.low = low;
+  piece.high = high;
 }

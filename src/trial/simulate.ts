@@ -22,6 +22,7 @@ export function simulateTrial(mechanism: SimulatedMechanism, request: TrialReque
     shape,
     seed,
     lostBeyond: null,
+    parts: 'kept',
   });
   const rows = runner.run(mechanism.plant, request.gains, request.move, request.outputCap);
   const { time, setpoint, measured, output, parts } = runner.columns;
