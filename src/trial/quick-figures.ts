@@ -1,5 +1,8 @@
 import { type ControllerSettings, fullOutput } from '../controller/settings.ts';
 import type { Move } from '../mechanism/profile.ts';
+import { wrapError } from './course.ts';
+import { DWELL } from './figures.ts';
+import { reversalsOf } from './reversals.ts';
 import type { TrialColumns } from './runner.ts';
 
 /** The few figures that a search compares, measured without an allocation. */
@@ -24,9 +27,6 @@ export interface QuickOptions {
   readonly controller: ControllerSettings;
 }
 
-/** s inside the tolerance before a record's end counts as settled. */
-const DWELL = 0.25;
-
 /** The quick figures of the first `rows` rows; definitions as in `figuresOf`, whose values they share. */
 export function quickFigures(columns: TrialColumns, rows: number, options: QuickOptions): QuickFigures {
   const { move, continuous } = options;
@@ -37,24 +37,20 @@ export function quickFigures(columns: TrialColumns, rows: number, options: Quick
   let overshoot = 0;
   let lastOutside = -1;
   for (let row = 0; row < rows; row++) {
-    const error = wrapped((setpoint[row] ?? 0) - (measured[row] ?? 0), continuous);
+    const error = wrapError((setpoint[row] ?? 0) - (measured[row] ?? 0), continuous);
     if (Math.abs(error) > options.tolerance) lastOutside = row;
     const past = -sign * error;
     if (past > overshoot) overshoot = past;
   }
   const last = rows - 1;
-  const endError = wrapped((setpoint[last] ?? 0) - (measured[last] ?? 0), continuous);
+  const endError = wrapError((setpoint[last] ?? 0) - (measured[last] ?? 0), continuous);
   return {
     settlingTime: settledAt(columns, lastOutside, rows, options),
     overshoot: (100 * overshoot) / size,
     endError,
     growing: isGrowing(columns, rows, options),
-    chatter: reversals(columns.output, rows, 0.02 * fullOutput(options.controller)) / Math.max(time[last] ?? 0, 1e-9),
+    chatter: reversalsOf(columns.output, time, 0.02 * fullOutput(options.controller), rows),
   };
-}
-
-function wrapped(error: number, continuous: number | null): number {
-  return continuous === null ? error : error - continuous * Math.round(error / continuous);
 }
 
 function settledAt(columns: TrialColumns, lastOutside: number, rows: number, options: QuickOptions): number | null {
@@ -62,9 +58,9 @@ function settledAt(columns: TrialColumns, lastOutside: number, rows: number, opt
   const end = time[rows - 1] ?? 0;
   if (lastOutside < 0) return end - (time[0] ?? 0) >= DWELL ? 0 : null;
   if (lastOutside >= rows - 1) return null;
-  const before = Math.abs(wrapped((setpoint[lastOutside] ?? 0) - (measured[lastOutside] ?? 0), options.continuous));
+  const before = Math.abs(wrapError((setpoint[lastOutside] ?? 0) - (measured[lastOutside] ?? 0), options.continuous));
   const after = Math.abs(
-    wrapped((setpoint[lastOutside + 1] ?? 0) - (measured[lastOutside + 1] ?? 0), options.continuous),
+    wrapError((setpoint[lastOutside + 1] ?? 0) - (measured[lastOutside + 1] ?? 0), options.continuous),
   );
   const t0 = time[lastOutside] ?? 0;
   const t1 = time[lastOutside + 1] ?? 0;
@@ -85,7 +81,7 @@ function isGrowing(columns: TrialColumns, rows: number, options: QuickOptions): 
   let previous = 0;
   let latest = 0;
   for (let row = 0; row < rows; row++) {
-    const error = wrapped((setpoint[row] ?? 0) - (measured[row] ?? 0), options.continuous);
+    const error = wrapError((setpoint[row] ?? 0) - (measured[row] ?? 0), options.continuous);
     if (Math.abs(error) > 15 * Math.max(size, least)) return true;
     const now = Math.abs(error) < least ? 0 : Math.sign(error);
     if (now !== 0 && now !== side) {
@@ -102,23 +98,4 @@ function isGrowing(columns: TrialColumns, rows: number, options: QuickOptions): 
   }
   // The first turning is the move itself; three more, none smaller than the last but one, is a swing that stays or grows.
   return count >= 5 && latest >= 0.97 * previous && latest >= 0.9 * first && latest > least;
-}
-
-/** Changes of direction of the output larger than `least`. */
-function reversals(output: Float64Array, rows: number, least: number): number {
-  let turns = 0;
-  let direction = 0;
-  let extreme = output[0] ?? 0;
-  for (let row = 1; row < rows; row++) {
-    const value = output[row] ?? 0;
-    if (direction >= 0 ? value > extreme : value < extreme) {
-      if (direction === 0) direction = Math.sign(value - extreme);
-      extreme = value;
-    } else if (Math.abs(value - extreme) > least) {
-      if (direction !== 0) turns++;
-      direction = Math.sign(value - extreme);
-      extreme = value;
-    }
-  }
-  return turns;
 }

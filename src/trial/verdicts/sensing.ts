@@ -1,0 +1,244 @@
+import { fullOutput } from '../../controller/settings.ts';
+import { plantWith } from '../../mechanism/plant-of.ts';
+import { formatNumber } from '../../mechanism/quantity.ts';
+import { respond } from '../../plant/respond.ts';
+import { wrapError } from '../course.ts';
+import {
+  amount,
+  breakawayOf,
+  fractions,
+  holdOf,
+  type Look,
+  noticeable,
+  output,
+  type Rule,
+  seconds,
+  verdict,
+} from './look.ts';
+
+/** Moves against its output. */
+export const reversed: Rule = (look) => {
+  const sent = fractions(look);
+  if (sent === null || (look.profile.quantity === 'speed' && look.move.from !== 0)) return null;
+  const { measured, time } = look.samples;
+  const first = measured[0] ?? 0;
+  const least = Math.max(noticeable(look), 0.03 * Math.abs(look.move.to - look.move.from));
+  const needed = breakawayOf(look) + holdOf(look);
+  let pushed = 0;
+  for (let row = 0; row < measured.length; row++) {
+    const way = wrapError((measured[row] ?? 0) - first, look.profile.continuous);
+    const push = sent[row] ?? 0;
+    const dt = (time[row + 1] ?? time[row] ?? 0) - (time[row] ?? 0);
+    pushed += Math.sign(push) * Math.max(0, Math.abs(push) - needed) * dt;
+    if (Math.abs(way) < least) continue;
+    // The first clear motion decides: pushed one way for a while, gone the other.
+    if (Math.sign(way) === Math.sign(push) || Math.abs(pushed) < 0.01 || Math.sign(pushed) !== Math.sign(push))
+      return null;
+    return verdict(
+      'reversed',
+      `Pushed with ${output(look, push * fullOutput(look.profile.controller))}, it moved ${amount(look, Math.abs(way))} the other way by ${seconds(time[row] ?? 0)}: the sign of the output or of the sensor is reversed.`,
+      'the first clear motion is against an output that was above breakaway and weight',
+      { output: push, moved: way },
+      [0, row],
+    );
+  }
+  return null;
+};
+
+/** Output without motion: the motor does not act, or the sensor does not see it. */
+export const deaf: Rule = (look) => {
+  const sent = fractions(look);
+  if (sent === null) return null;
+  const { measured, time } = look.samples;
+  const first = measured[0] ?? 0;
+  const moved = measured.reduce((far, value) => Math.max(far, Math.abs(value - first)), 0);
+  if (moved >= noticeable(look)) return null;
+  const needed = Math.max(0.12, 1.6 * breakawayOf(look)) + holdOf(look);
+  let long = 0;
+  let strongest = 0;
+  for (let row = 0; row + 1 < time.length; row++) {
+    const push = Math.abs(sent[row] ?? 0);
+    if (push >= needed) long += (time[row + 1] ?? 0) - (time[row] ?? 0);
+    strongest = Math.max(strongest, push);
+  }
+  if (long < 0.25) return null;
+  const noisy = (look.profile.sensor?.noise ?? 0) > 0 && measured.every((value) => value === first);
+  const full = fullOutput(look.profile.controller);
+  return verdict(
+    noisy ? 'frozen' : 'deaf',
+    noisy
+      ? `The reading stayed at ${amount(look, first)} to the last digit for the whole record while up to ${output(look, strongest * full)} was sent; a live sensor would show its noise.`
+      : `Up to ${output(look, strongest * full)} was sent and the reading stayed at ${amount(look, first)}: either nothing moved, or the sensor did not see it.`,
+    'output well above breakaway and weight for a quarter of a second or more, reading within its noise',
+    { strongest, seconds: long, moved },
+  );
+};
+
+/** The reading stops dead in mid-motion while the output goes on. */
+export const frozen: Rule = (look) => {
+  const sent = fractions(look);
+  if (sent === null) return null;
+  const { measured, time } = look.samples;
+  const { min, max } = look.profile.limits;
+  const step = Math.max(look.profile.sensor?.resolution ?? 0, 1e-12);
+  const least = 0.2 * Math.abs(look.move.to - look.move.from);
+  for (let row = 3; row < measured.length; row++) {
+    if (measured[row] !== measured[row - 1]) continue;
+    let end = row;
+    while (end + 1 < measured.length && measured[end + 1] === measured[row]) end++;
+    const flat = (time[end] ?? 0) - (time[row - 1] ?? 0);
+    const before = (measured[row - 1] ?? 0) - (measured[row - 3] ?? 0);
+    const at = measured[row] ?? 0;
+    const away = Math.abs(wrapError((look.samples.setpoint[row] ?? 0) - at, look.profile.continuous));
+    const pushing = meanSize(sent, row, end) > Math.max(0.3, 1.5 * breakawayOf(look) + holdOf(look));
+    const byStop = (min !== null && at - min < 0.02 * away) || (max !== null && max - at < 0.02 * away);
+    const fast = look.profile.quantity === 'speed' ? Math.abs(at) > 8 * step : Math.abs(before) > 8 * step;
+    if (flat >= 0.3 && fast && pushing && !byStop && away > least && look.profile.quantity === 'position') {
+      return verdict(
+        'frozen',
+        `The reading stopped dead at ${amount(look, at)} at ${seconds(time[row - 1] ?? 0)}, in mid-motion, and stayed there for ${seconds(flat)} while the output went on pushing.`,
+        'reading the same to the last digit for 0.3 s or more, straight from motion, with output above breakaway',
+        { at, seconds: flat },
+        [row - 1, end],
+      );
+    }
+    row = end;
+  }
+  return null;
+};
+
+function meanSize(values: Float64Array, first: number, last: number): number {
+  let sum = 0;
+  for (let row = first; row <= last; row++) sum += Math.abs(values[row] ?? 0);
+  return sum / (last - first + 1);
+}
+
+/** Steps of the reading that no motor could make. */
+export const jumps: Rule = (look) => {
+  const { measured, time } = look.samples;
+  const known = look.nameplate ?? look.response;
+  const size = Math.abs(look.move.to - look.move.from);
+  const rows: number[] = [];
+  let worst = 0;
+  for (let k = 1; k < look.course.rows.length; k++) {
+    const row = look.course.rows[k] ?? 0;
+    const previous = look.course.rows[k - 1] ?? 0;
+    const change = Math.abs(wrapError((measured[row] ?? 0) - (measured[previous] ?? 0), look.profile.continuous));
+    const dt = Math.max((time[row] ?? 0) - (time[previous] ?? 0), 0.2 * look.profile.controller.period);
+    const possible =
+      look.profile.quantity === 'position' ? possibleStep(known, dt, look) : possibleSpeedStep(known, dt, look);
+    if (change > Math.max(possible, 0.12 * size, 2 * noticeable(look))) {
+      rows.push(row);
+      worst = Math.max(worst, change);
+    }
+  }
+  const glitches = look.course.glitches.length;
+  if (rows.length === 0 && glitches < 3) return null;
+  const first = rows[0] ?? look.course.glitches[0] ?? 0;
+  return verdict(
+    'jumps',
+    rows.length > 0
+      ? `The reading jumped by ${amount(look, worst)} from one sample to the next at ${seconds(time[first] ?? 0)}: no motor moves it that fast.`
+      : `${glitches} single samples stand far off from their neighbours, the first at ${seconds(time[first] ?? 0)}.`,
+    'a step from sample to sample beyond three times the top speed, or three or more glitches',
+    { jumps: rows.length, glitches, worst },
+    [Math.max(0, first - 1), first],
+  );
+};
+
+function possibleStep(known: Look['response'], dt: number, look: Look): number {
+  // Unknown machine: no sane mechanism makes a fifth of its move in one tick and rests before and after.
+  return known === null ? 0.3 * Math.abs(look.move.to - look.move.from) : 3 * known.topSpeed * dt;
+}
+
+function possibleSpeedStep(known: Look['response'], dt: number, look: Look): number {
+  if (known === null) return 0.6 * Math.abs(look.move.to - look.move.from);
+  return 4 * known.topSpeed * Math.min(1, dt / known.lag) + 0.15 * known.topSpeed;
+}
+
+/** Ratios that a mixed-up unit leaves, with the words for it. */
+const UNIT_RATIOS: readonly (readonly [ratio: number, words: string])[] = [
+  [25.4, 'millimetres for inches'],
+  [2.54, 'centimetres for inches'],
+  [39.37, 'inches for metres'],
+  [3.281, 'feet for metres'],
+  [10, 'a factor of ten'],
+  [12, 'inches for feet'],
+  [100, 'centimetres for metres, or percent for a fraction'],
+  [1000, 'millimetres for metres'],
+  [57.2958, 'degrees for radians'],
+  [6.28319, 'radians for turns'],
+  [360, 'degrees for turns'],
+  [60, 'per minute for per second'],
+  [9.5493, 'rpm for rad/s'],
+  [1024, 'raw ticks of the sensor'],
+  [2048, 'raw ticks of the sensor'],
+  [4096, 'raw ticks of the sensor'],
+  [8192, 'raw ticks of the sensor'],
+];
+
+/** The reading moves by another scale than the nameplate says it can. */
+export const wrongScale: Rule = (look) => {
+  const ratio = scaleRatio(look);
+  if (ratio === null) return null;
+  const size = Math.abs(Math.log(ratio));
+  // A nameplate wrong by 30 %, friction and load together stay well under this.
+  if (size < Math.log(2.2)) return null;
+  const match = UNIT_RATIOS.find(([known]) => Math.abs(size - Math.log(known)) < 0.22);
+  if (match === undefined && size < Math.log(4)) return null;
+  const times = ratio > 1 ? `${formatNumber(ratio, 2)} times as far` : `only 1/${formatNumber(1 / ratio, 2)} as far`;
+  const likely =
+    match === undefined
+      ? 'That is no unit ratio; check reduction, radius and the sensor’s conversion.'
+      : `That looks like ${match[1]}${ratio > 1 ? '' : ', the other way round'}.`;
+  return verdict(
+    'wrong-scale',
+    `The reading moved ${times} as the nameplate says this output can move it. ${likely}`,
+    'motion over the motion that the nameplate gives for the same output is beyond 2.2, or under 1/2.2',
+    { ratio },
+  );
+};
+
+/** Measured motion over that of the nameplate under the same output; null when there is too little of either. */
+function scaleRatio(look: Look): number | null {
+  const sent = fractions(look);
+  if (sent === null || look.nameplate === null) return null;
+  const { time, measured } = look.samples;
+  const plant = {
+    ...plantWith(look.profile, { ...look.nameplate, dragBack: look.nameplate.drag }),
+    coupling: null,
+    stops: { min: null, max: null },
+  };
+  const speedLoop = look.profile.quantity === 'speed';
+  const answer = respond(
+    plant,
+    speedLoop ? { position: 0, speed: look.move.from } : { position: look.move.from, speed: 0 },
+    time,
+    sent,
+  );
+  const rows = firstDrive(sent);
+  let own = 0;
+  let both = 0;
+  let farthest = 0;
+  let expected = 0;
+  for (let row = 0; row < rows; row++) {
+    const x = (answer[row] ?? 0) - look.move.from;
+    const y = wrapError((measured[row] ?? 0) - (measured[0] ?? 0), look.profile.continuous);
+    own += x * x;
+    both += x * y;
+    farthest = Math.max(farthest, Math.abs(y));
+    expected = Math.max(expected, Math.abs(x));
+  }
+  if (farthest < noticeable(look) || expected < 2 * noticeable(look) * 1e-3 || own === 0 || both <= 0) return null;
+  return both / own;
+}
+
+/** Rows until the output first turns or fades: there drag and weight matter least. */
+function firstDrive(sent: Float64Array): number {
+  const peak = sent.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
+  const way = Math.sign(sent.find((value) => Math.abs(value) > 0.3 * peak) ?? 0);
+  const start = sent.findIndex((value) => Math.abs(value) > 0.3 * peak);
+  let row = Math.max(0, start);
+  while (row < sent.length && Math.sign(sent[row] ?? 0) === way && Math.abs(sent[row] ?? 0) > 0.3 * peak) row++;
+  return Math.min(sent.length, Math.max(row + 1, 6));
+}
