@@ -38,11 +38,8 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
   const problem = (sigma: number, weight: number) =>
     residualsFor({ drives, answers, centre, deviations, free, delayScale, sigma, weight });
   const first = bestStart(problem(20 * floor, 1), centre, free, deviations, delayScale, profile);
-  const rough = leastSquares(
-    problem(Math.max(5 * floor, spreadOf(drives, answers, decodeAt(first, centre, free, delayScale))), 0.3),
-    first,
-    options(12, free, deviations),
-  );
+  // First as if every residual counted: what the prior would pull aside must not pass for a poor model.
+  const rough = leastSquares(problem(5 * floor, 1), first, options(20, free, deviations));
   const roughResponse = decodeAt(rough.parameters, centre, free, delayScale);
   const sigma = Math.max(floor, spreadOf(drives, answers, roughResponse));
   const weight = independence(drives, answers.of(roughResponse));
