@@ -7,8 +7,8 @@ export interface CommandContext {
   readonly edge: Edge;
   /** True = one JSON document on standard output, nothing else there. */
   readonly json: boolean;
-  /** Seed of everything random. */
-  readonly seed: number;
+  /** Seed of everything random, where one was given. */
+  readonly seed: number | null;
   /** The folder of profiles a person named; null = the usual one. */
   readonly profiles: string | null;
   readonly style: Style;

@@ -3,7 +3,8 @@ import { wrapError } from '../controller/tick.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
 import { type Edge, EXIT } from './edge.ts';
-import { Failure, unusable } from './failure.ts';
+import { explain } from './explain.ts';
+import { unusable } from './failure.ts';
 import { lastWords, type ProcessEnd, runProcess } from './outside-process.ts';
 import type { PlantAnswer, TrialPlant } from './run-trials.ts';
 
@@ -18,7 +19,7 @@ export interface OutsidePlantOptions {
   readonly timeout: number;
   readonly edge: Edge;
   /** Reads the command's standard output as a trial log; throws the log room's errors. */
-  readonly readLog: (bytes: Uint8Array, name: string) => Samples;
+  readonly readLog: (bytes: Uint8Array, name: string) => Promise<Samples>;
 }
 
 /** `holdfast/trial-request@1`; contracts, section 3. */
@@ -51,7 +52,12 @@ export function outsidePlant(options: OutsidePlantOptions): TrialPlant {
   };
 }
 
-function answerOf(end: ProcessEnd, proposal: Proposal, trial: number, options: OutsidePlantOptions): PlantAnswer {
+async function answerOf(
+  end: ProcessEnd,
+  proposal: Proposal,
+  trial: number,
+  options: OutsidePlantOptions,
+): Promise<PlantAnswer> {
   const fail = (what: string, remedy: string, said = ''): PlantAnswer => ({
     kind: 'failed',
     failure: unusable(`Trial ${trial} failed: ${what}${saidText(said)}`, remedy, { file: options.words[0] ?? null }),
@@ -85,22 +91,23 @@ function answerOf(end: ProcessEnd, proposal: Proposal, trial: number, options: O
   }
 }
 
-function readAnswer(
+async function readAnswer(
   output: Uint8Array,
   said: string,
   proposal: Proposal,
   trial: number,
   options: OutsidePlantOptions,
-): PlantAnswer {
+): Promise<PlantAnswer> {
   const name = `log of trial ${trial}`;
   try {
-    const samples = options.readLog(output, name);
+    const samples = await options.readLog(output, name);
     checkAnswer(samples, proposal, options.profile);
     return { kind: 'log', samples };
   } catch (error) {
-    if (!(error instanceof Failure) || error.exit !== EXIT.unusableInput) throw error;
-    const what = `Trial ${trial} failed: the command's log does not read. ${error.message}${saidText(said)}`;
-    return { kind: 'failed', failure: unusable(what, error.remedy, { file: name, line: error.where.line }) };
+    const failure = explain(error);
+    if (failure.exit !== EXIT.unusableInput) throw error;
+    const what = `Trial ${trial} failed: the command's log does not read: ${failure.message}${saidText(said)}`;
+    return { kind: 'failed', failure: unusable(what, failure.remedy, { file: name, line: failure.where.line }) };
   }
 }
 

@@ -33,7 +33,7 @@ interface GlobalOptions {
 export interface ConsoleOptions {
   readonly profiles: string | null;
   readonly style: Style;
-  readonly seed: number;
+  readonly seed: number | null;
 }
 
 export type OpenConsole = (options: ConsoleOptions) => Promise<ExitCode>;
@@ -130,7 +130,7 @@ function contextOf(program: Command, edge: Edge): CommandContext {
   return {
     edge,
     json: options.json === true,
-    seed: options.seed ?? 1,
+    seed: options.seed ?? null,
     profiles: options.profiles ?? null,
     style: styleOf({ ascii: options.ascii === true, colour: options.colour }, edge),
     width: pageWidth(edge),
