@@ -70,6 +70,12 @@ const runSchema = z.looseObject({
 export type KeptRun = z.infer<typeof runSchema>;
 export type KeptTrial = z.infer<typeof keptTrial>;
 
+/** What a run is started with. */
+export type RunStart = Pick<KeptRun, 'profile' | 'profileDigest' | 'plant' | 'seed' | 'maxTrials' | 'event'>;
+
+/** A trial as it is handed over to be kept: all but the file and digest of its log. */
+export type NewTrial = Pick<KeptTrial, 'trial' | 'stage' | 'gains' | 'move' | 'outputCap' | 'band' | 'why' | 'figures' | 'verdict' | 'inBand' | 'signature'>;
+
 const runsFolder = (store: Store, profile: string) => join(store.folder, 'trials', profile);
 const runPath = (store: Store, run: Pick<KeptRun, 'profile' | 'id'>) =>
   join(runsFolder(store, run.profile), run.id, 'run.json');
@@ -124,7 +130,7 @@ export async function openRunOf(
 /** Starts a run under the next free number. */
 export async function startRun(
   store: Store,
-  start: Omit<KeptRun, 'format' | 'id' | 'trials' | 'status' | 'outcome'>,
+  start: RunStart,
 ): Promise<KeptRun> {
   return withLock(store.folder, async () => {
     const entries = await readdir(runsFolder(store, start.profile)).catch(() => []);
@@ -148,14 +154,14 @@ export async function startRun(
 export async function keepTrial(
   store: Store,
   run: KeptRun,
-  trial: Omit<KeptTrial, 'log' | 'digest'>,
+  trial: NewTrial,
   logText: string,
 ): Promise<KeptRun> {
   const log = `${String(trial.trial).padStart(3, '0')}-${trial.stage}.csv`;
   return withLock(store.folder, async () => {
     await writeDurably(join(runsFolder(store, run.profile), run.id, log), logText);
     const now = await readRun(store, run.profile, run.id);
-    const kept: KeptTrial = { ...trial, log, digest: digestOf(logText) } as KeptTrial;
+    const kept: KeptTrial = { ...trial, log, digest: digestOf(logText) };
     const after: KeptRun = { ...now, trials: [...now.trials.filter((one) => one.trial !== trial.trial), kept] };
     await writeDurably(runPath(store, run), documentText(after));
     return after;
