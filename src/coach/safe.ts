@@ -11,6 +11,9 @@ export interface SafetyCheck {
   readonly safe: boolean;
   /** What broke, in words; null when safe. */
   readonly why: 'limits' | 'growing-swing' | null;
+  /** Share of the rehearsals that leave the travel limits, and that swing wider and wider; what the gate asks for. */
+  readonly outside: number;
+  readonly growing: number;
 }
 
 /** Rehearses a trial over all draws, with the stops taken away so that leaving the limits shows. */
@@ -30,9 +33,9 @@ export function checkSafety(
     if (profile.quantity === 'position' && leaves(columns.measured, rows, profile, trial.move)) outside++;
   }
   const allowed = (1 - SAFE_SHARE) * draws.length;
-  if (outside > allowed) return { safe: false, why: 'limits' };
-  if (growing > allowed) return { safe: false, why: 'growing-swing' };
-  return { safe: true, why: null };
+  const why = outside > allowed ? 'limits' : growing > allowed ? 'growing-swing' : null;
+  const count = Math.max(1, draws.length);
+  return { safe: why === null, why, outside: outside / count, growing: growing / count };
 }
 
 function leaves(measured: Float64Array, rows: number, profile: Profile, move: Move): boolean {

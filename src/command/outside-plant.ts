@@ -36,20 +36,31 @@ export function trialRequest(proposal: Proposal, trial: number, profile: Profile
   };
 }
 
-/** A plant that is a command: started once a trial, one request in, one log out; contracts, section 3. */
-export function outsidePlant(options: OutsidePlantOptions): TrialPlant {
+/** A command that a person vouches for as a simulation: no trial of it moves anything. Contracts, section 3. */
+export function simulatedCommand(options: OutsidePlantOptions): TrialPlant {
+  return { run: (proposal, trial) => runCommand(proposal, trial, options) };
+}
+
+/** A command that moves a machine: each trial needs the permit that the gate gave for this very trial. */
+export function poweredCommand(options: OutsidePlantOptions): TrialPlant {
   return {
-    run: async (proposal, trial) => {
-      const request = `${JSON.stringify(trialRequest(proposal, trial, options.profile))}\n`;
-      const end = await runProcess(options.words, request, {
-        cwd: options.edge.cwd,
-        timeout: options.timeout * 1000,
-        mostOutput: MOST_OUTPUT,
-        interrupted: options.edge.interrupted,
-      });
-      return answerOf(end, proposal, trial, options);
+    run: (proposal, trial, permit) => {
+      if (permit?.trial !== trial) throw new Error(`Trial ${trial} has no permit.`);
+      return runCommand(proposal, trial, options);
     },
   };
+}
+
+/** Starts the command once: one request in, one log out. */
+async function runCommand(proposal: Proposal, trial: number, options: OutsidePlantOptions): Promise<PlantAnswer> {
+  const request = `${JSON.stringify(trialRequest(proposal, trial, options.profile))}\n`;
+  const end = await runProcess(options.words, request, {
+    cwd: options.edge.cwd,
+    timeout: options.timeout * 1000,
+    mostOutput: MOST_OUTPUT,
+    interrupted: options.edge.interrupted,
+  });
+  return answerOf(end, proposal, trial, options);
 }
 
 async function answerOf(

@@ -7,7 +7,7 @@ import { readingOf, simulatedMechanismOf } from '../trial/simulate.ts';
 import type { CommandContext } from './command.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { readOptionsOf } from './log-options.ts';
-import { outsidePlant } from './outside-plant.ts';
+import { poweredCommand, simulatedCommand } from './outside-plant.ts';
 import type { TrialPlant } from './run-trials.ts';
 import { simulatedPlant } from './sim-plant.ts';
 import { splitWords } from './words.ts';
@@ -69,17 +69,18 @@ export async function fittedPlant(
   return simulatedPlant({ plant: plantWith(profile, learnt.response), reading: readingOf(profile) }, profile, seed);
 }
 
-/** A command as a plant; contracts, section 3. */
+/** A command as a plant, powered or vouched for as a simulation; contracts, section 3. */
 export function commandPlant(
   words: readonly string[],
   profile: Profile,
-  timeout: number,
+  how: { readonly timeout: number; readonly simulated: boolean },
   context: CommandContext,
 ): TrialPlant {
-  return outsidePlant({
+  const make = how.simulated ? simulatedCommand : poweredCommand;
+  return make({
     words,
     profile,
-    timeout,
+    timeout: how.timeout,
     edge: context.edge,
     readLog: async (bytes, name) => (await readLogBytes(bytes, name, readOptionsOf({}, profile, 'needed'))).samples,
   });

@@ -1,0 +1,94 @@
+import type { Profile } from '../mechanism/profile.ts';
+import { profileDigest } from '../profile/store.ts';
+import { type GateRequest, openGate } from '../safety/gate.ts';
+import type { Checklist, GateRefusal, Signature } from '../safety/hazard.ts';
+import { checklistText, trialLine } from './checklist-text.ts';
+import type { CommandContext } from './command.ts';
+import { type Failure, refused } from './failure.ts';
+import { heading, spelt, wrapped } from './page.ts';
+import { dangersOf } from './planned-trial.ts';
+import type { Admission, AskedTrial } from './run-trials.ts';
+
+/** Rules that only a person's ticks and name can meet; the others are checked before anyone is asked to tick. */
+const PERSONAL: readonly GateRefusal['rule'][] = ['ticks', 'name', 'lapsed', 'cap', 'changed'];
+
+/**
+ * Leave for the powered trials of one run: prints each trial's checklist, has it ticked item by item and signed at the
+ * terminal, and takes it through the gate. Without a person at a terminal every trial is refused; nothing switches it off.
+ */
+export function poweredAdmission(
+  profile: Profile,
+  seed: number,
+  context: CommandContext,
+): (asked: AskedTrial) => Promise<Admission> {
+  const digest = profileDigest(profile);
+  const { edge } = context;
+  let lastName = '';
+  return async ({ proposal, trial, history, reading }) => {
+    const dangers = dangersOf(profile, reading.learnt, proposal, seed);
+    const request = (signature: Signature | null): GateRequest => ({
+      profile,
+      profileDigest: digest,
+      trial,
+      outputCap: proposal.outputCap,
+      stage: proposal.stage,
+      directionChecked: history.trials.some(({ stage }) => stage === 'ready'),
+      outside: dangers.outside,
+      growing: dangers.growing,
+      items: dangers.checklist.items,
+      signature,
+      now: edge.now(),
+    });
+    const before = openGate(request(null));
+    const fixed = before.open ? [] : before.reasons.filter(({ rule }) => !PERSONAL.includes(rule));
+    if (fixed.length > 0) return { open: false, failure: refusal(trial, fixed) };
+    if (!edge.terminal.input || !edge.terminal.errors) return { open: false, failure: nobodyThere(trial) };
+    const say = (text: string) => edge.err(`${spelt(text, context.style)}\n`);
+    say(heading(`Trial ${trial}: checklist before power`, context.width, context.style));
+    say(wrapped(trialLine(proposal, profile), context.width).join('\n'));
+    say(`\n${checklistText(dangers.checklist, profile, context.width)}\n`);
+    const answer = await ticked(dangers.checklist, lastName, context);
+    if (answer === null || edge.interrupted.aborted) return { open: 'interrupted' };
+    lastName = answer.name;
+    const signature = { ...answer, at: edge.now(), outputCap: proposal.outputCap, profileDigest: digest };
+    const opening = openGate(request(signature));
+    return opening.open
+      ? { open: true, permit: opening.permit }
+      : { open: false, failure: refusal(trial, opening.reasons) };
+  };
+}
+
+/** Asks for each item, then for the name; null at Ctrl-C or the end of input. An item that is not affirmed ends the asking. */
+async function ticked(
+  { items }: Checklist,
+  lastName: string,
+  context: CommandContext,
+): Promise<Pick<Signature, 'name' | 'ticked'> | null> {
+  const ask = async (question: string) => context.edge.ask(spelt(question, context.style));
+  context.edge.err('Tick each item with y; anything else refuses the trial.\n');
+  const ids: string[] = [];
+  for (const [k, item] of items.entries()) {
+    const answer = await ask(`[${k + 1}/${items.length}] ${item.text} y? `);
+    if (answer === null) return null;
+    if (!/^\s*y(es)?\s*$/i.test(answer)) return { name: lastName, ticked: ids };
+    ids.push(item.id);
+  }
+  const name = await ask(lastName === '' ? 'Who ticked? Name: ' : `Who ticked? Name, or Enter for ${lastName}: `);
+  if (name === null) return null;
+  return { name: name.trim() === '' ? lastName : name.trim(), ticked: ids };
+}
+
+function refusal(trial: number, reasons: readonly GateRefusal[]): Failure {
+  const shortest = reasons.slice(0, 4);
+  return refused(
+    `Trial ${trial} is not powered. ${shortest.map(({ what }) => what).join(' ')}`,
+    shortest.map(({ remedy }) => remedy).join(' '),
+  );
+}
+
+function nobodyThere(trial: number): Failure {
+  return refused(
+    `Trial ${trial} is not powered: a person has to tick its checklist, and there is no terminal to ask at.`,
+    'Run this in a terminal. If the command is a simulation and moves nothing, say so with --plant-is-simulated.',
+  );
+}
