@@ -1,4 +1,4 @@
-import { fullOutput, type Gains } from '../controller/settings.ts';
+import type { Gains } from '../controller/settings.ts';
 import { maxSensitivityOf } from '../margin/of-response.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
 import type { PlantModel, ResponseModel } from '../plant/response-model.ts';
@@ -94,9 +94,4 @@ function sensitivityCharge(gains: Gains, draws: readonly Draw[], ground: Ground)
   });
   if (!Number.isFinite(peak)) return 4 * ground.aim.settlingTime;
   return peak > MOST_SENSITIVE ? ground.aim.settlingTime * Math.min(4, 0.2 + 2 * (peak - MOST_SENSITIVE)) : 0;
-}
-
-/** Output (fraction) that the proportional term asks for at the start of a move. */
-export function firstOutput(gains: Gains, move: Move, profile: Profile): number {
-  return (gains.kp * Math.abs(move.to - move.from)) / fullOutput(profile.controller);
 }

@@ -22,7 +22,7 @@ import { firstTrial, machineKnown } from './ready.ts';
 import { derivativeWhy, integralWhy, proofWhy, proportionalWhy, readyWhy } from './reasons.ts';
 import { rehearsalOf } from './rehearsal.ts';
 import { kdLimit } from './scales.ts';
-import { lastOf, provenMoves, type Situation, targetMoves, trialsIn, unprovenMoves } from './situation.ts';
+import { lastOf, provenMoves, type Situation, sameMove, targetMoves, trialsIn, unprovenMoves } from './situation.ts';
 import { nextStage, type Outlook } from './stage.ts';
 import type { Proposal, TrialReading, TrialRecord } from './step.ts';
 import { trustedBounds } from './trust.ts';
@@ -170,11 +170,12 @@ function draftOf(situation: Situation, last: Last): Omit<Draft, 'stage' | 'gains
   };
 }
 
-/** The target's move that starts nearest to where the last trial ended: nobody has to carry the mechanism back. */
+/** The move that was just missed; before any, the target's move that starts nearest to where the last trial began. */
 function nextMove(situation: Situation, last: TrialRecord): Move {
   const moves = targetMoves(situation.profile);
   const first = moves[0] ?? last.move;
-  const end = last.stage === 'ready' ? last.move.from : last.move.to;
+  if (moves.some((move) => sameMove(move, last.move))) return last.move;
+  const end = last.move.from;
   return moves.reduce(
     (best, move) => (Math.abs(move.from - end) < Math.abs(best.from - end) - 1e-12 ? move : best),
     first,

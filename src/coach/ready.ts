@@ -1,6 +1,7 @@
 import { fullOutput, type Gains } from '../controller/settings.ts';
 import type { Prior } from '../learn/learnt.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
+import { straightMove } from '../trial/course.ts';
 import { carryingGains, loopScales } from './scales.ts';
 
 /** A first move: little travel, little output, much learnt. */
@@ -54,7 +55,10 @@ export function firstTrial(profile: Profile, prior: Prior, cap: number, attempt:
 
 /** The target's shortest move. */
 export function shortestMove(profile: Profile): readonly [from: number, to: number] {
-  const moves = profile.target.moves;
+  const moves = profile.target.moves.map(([from, to]) => {
+    const straight = straightMove({ from, to }, profile.continuous);
+    return [straight.from, straight.to] as const;
+  });
   const first = moves[0] ?? [0, 0];
   return moves.reduce((best, move) => (Math.abs(move[1] - move[0]) < Math.abs(best[1] - best[0]) ? move : best), first);
 }

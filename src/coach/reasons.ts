@@ -2,6 +2,7 @@ import { fullOutput, type Gains } from '../controller/settings.ts';
 import type { LearntModel, Prior } from '../learn/learnt.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
+import { straightMove } from '../trial/course.ts';
 import type { FirstTrial } from './ready.ts';
 import type { ExpectedFigures, TrialReading, TrialRecord } from './step.ts';
 
@@ -110,7 +111,7 @@ export function derivativeWhy(
   reading: TrialReading,
 ): string {
   const { overshoot, settlingTime } = reading.figures;
-  const reach = Math.abs(last.move.to - last.move.from);
+  const reach = travelOf(last.move, profile);
   const ran =
     overshoot > profile.target.overshoot
       ? `It ran ${amount((overshoot / 100) * reach, profile)} past the target`
@@ -149,7 +150,7 @@ export function expectText(profile: Profile, expected: ExpectedFigures | null, m
   if (expected === null) return 'No promise yet: this trial is the first look at the machine.';
   const [, , restHigh] = expected.restingError;
   const [settle, low, high] = expected.settlingTime;
-  const reach = Math.abs(move.to - move.from);
+  const reach = travelOf(move, profile);
   const over =
     expected.overshoot[2] > 0.05
       ? `past the target by at most ${amount((expected.overshoot[2] / 100) * reach, profile)}`
@@ -171,7 +172,13 @@ export function unlessText(prior: Prior, learnt: LearntModel | null, profile: Pr
 
 function longestReach(profile: Profile): number {
   const ends = profile.target.moves.map(([from, to]) =>
-    profile.quantity === 'speed' ? Math.abs(to) : Math.abs(to - from),
+    profile.quantity === 'speed' ? Math.abs(to) : travelOf({ from, to }, profile),
   );
   return Math.max(0, ...ends);
+}
+
+/** How far a move goes, the short way round on a wrapping scale. */
+function travelOf(move: Move, profile: Profile): number {
+  const straight = straightMove(move, profile.continuous);
+  return Math.abs(straight.to - straight.from);
 }

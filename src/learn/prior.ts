@@ -2,6 +2,7 @@ import { responseOf } from '../mechanism/plant-of.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import { normalNumbers } from '../trial/chance.ts';
+import { straightMove } from '../trial/course.ts';
 import type { Prior } from './learnt.ts';
 import { decode, encode, PARAMETERS, priorDeviations } from './parameters.ts';
 
@@ -39,10 +40,14 @@ export function priorOf(profile: Profile): Prior {
 
 function unknownResponse(profile: Profile): Omit<ResponseModel, 'delay'> {
   const moves = profile.target.moves;
+  const travelled = (from: number, to: number) => {
+    const straight = straightMove({ from, to }, profile.continuous);
+    return Math.abs(straight.to - straight.from);
+  };
   const reach = Math.max(
     1e-9,
     ...moves.map(([from, to]) =>
-      profile.quantity === 'speed' ? Math.max(Math.abs(from), Math.abs(to)) : Math.abs(to - from),
+      profile.quantity === 'speed' ? Math.max(Math.abs(from), Math.abs(to)) : travelled(from, to),
     ),
   );
   const topSpeed = profile.quantity === 'speed' ? 1.6 * reach : (2.5 * reach) / profile.target.settlingTime;

@@ -14,6 +14,13 @@ export interface Course {
   readonly glitches: readonly number[];
 }
 
+/**
+ * A move as it is travelled: on a wrapping scale the short way round, so that 350 to 20 of 360 is 30 onward, not 330 back.
+ */
+export function straightMove(move: Move, continuous: number | null): Move {
+  return continuous === null ? move : { from: move.from, to: move.from + wrapError(move.to - move.from, continuous) };
+}
+
 /** Brings an error into ±half the wrap width; as it is when nothing wraps. */
 export function wrapError(error: number, continuous: number | null): number {
   return continuous === null ? error : error - continuous * Math.round(error / continuous);

@@ -1,6 +1,6 @@
 import type { Move } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
-import { type Course, courseOf } from './course.ts';
+import { type Course, courseOf, straightMove } from './course.ts';
 import { reversalsOf } from './reversals.ts';
 import { swingOf } from './swing.ts';
 
@@ -54,7 +54,8 @@ export const DWELL = 0.25;
  * @throws {RangeError} when the record has fewer than two rows
  * Source: IEEE Std 181-2011 terms (transition duration, overshoot as a share of the amplitude; mem).
  */
-export function figuresOf(samples: Samples, options: FigureOptions): Figures {
+export function figuresOf(samples: Samples, asked: FigureOptions): Figures {
+  const options = { ...asked, move: straightMove(asked.move, asked.continuous) };
   if (samples.time.length < 2) throw new RangeError('a move needs at least two rows to be measured');
   const course = courseOf(samples, options.move, options.continuous);
   const size = Math.abs(options.move.to - options.move.from) || 1;

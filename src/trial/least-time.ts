@@ -1,5 +1,6 @@
 import type { Move, Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
+import { straightMove } from './course.ts';
 
 /**
  * Least time in which full output can bring a mechanism inside the tolerance: full output, then full braking so that it
@@ -8,7 +9,8 @@ import type { ResponseModel } from '../plant/response-model.ts';
  * @param outputCap fraction of full output
  * Source: time-optimal control of K/(s(τs+1)) is bang-bang with one switch (closed form in each piece; the switch by bisection).
  */
-export function leastTime(response: ResponseModel, profile: Profile, move: Move, outputCap: number): number {
+export function leastTime(response: ResponseModel, profile: Profile, asked: Move, outputCap: number): number {
+  const move = straightMove(asked, profile.continuous);
   const distance = Math.abs(move.to - move.from) - profile.target.tolerance;
   if (distance <= 0) return 0;
   const dead = response.delay + (profile.sensor?.delay ?? 0);

@@ -1,6 +1,6 @@
 import { type ControllerSettings, fullOutput } from '../controller/settings.ts';
 import type { Move } from '../mechanism/profile.ts';
-import { wrapError } from './course.ts';
+import { straightMove, wrapError } from './course.ts';
 import { DWELL } from './figures.ts';
 import { reversalsOf } from './reversals.ts';
 import type { TrialColumns } from './runner.ts';
@@ -29,8 +29,9 @@ export interface QuickOptions {
 
 /** The quick figures of the first `rows` rows; definitions as in `figuresOf`, whose values they share. */
 export function quickFigures(columns: TrialColumns, rows: number, options: QuickOptions): QuickFigures {
-  const { move, continuous } = options;
-  const whole = move.to - move.from;
+  const { continuous } = options;
+  const straight = straightMove(options.move, continuous);
+  const whole = straight.to - straight.from;
   const sign = Math.sign(whole) || 1;
   const size = Math.max(Math.abs(whole), 1e-12);
   const { time, setpoint, measured } = columns;
@@ -72,7 +73,8 @@ function settledAt(columns: TrialColumns, lastOutside: number, rows: number, opt
 /** Swings that end no smaller than they began, or as wide as a fifth of the move: successive turning points of the error. */
 function isGrowing(columns: TrialColumns, rows: number, options: QuickOptions): boolean {
   const { setpoint, measured } = columns;
-  const size = Math.abs(options.move.to - options.move.from);
+  const straight = straightMove(options.move, options.continuous);
+  const size = Math.abs(straight.to - straight.from);
   const least = Math.max(options.tolerance, 3 * options.resolution, 0.01 * size);
   let extreme = 0;
   let side = 0;

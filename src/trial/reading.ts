@@ -1,7 +1,7 @@
 import { fullOutput } from '../controller/settings.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
-import { courseOf } from './course.ts';
+import { courseOf, straightMove } from './course.ts';
 import { type Figures, figuresOf } from './figures.ts';
 import type { Verdict } from './verdict.ts';
 import { overshoots, settled, slow, stuckShort } from './verdicts/ending.ts';
@@ -51,7 +51,8 @@ export interface Reading {
 
 /** Figures and verdicts of one recorded move. @throws {RangeError} when the record has fewer than two rows */
 export function readTrial(samples: Samples, context: ReadingContext): Reading {
-  const { profile, move } = context;
+  const { profile } = context;
+  const move = straightMove(context.move, profile.continuous);
   const full = fullOutput(profile.controller);
   const figures = figuresOf(samples, {
     move,
@@ -61,7 +62,7 @@ export function readTrial(samples: Samples, context: ReadingContext): Reading {
     fullOutput: full,
     resolution: profile.sensor?.resolution ?? 0,
   });
-  const look: Look = { ...context, samples, figures, course: courseOf(samples, move, profile.continuous) };
+  const look: Look = { ...context, move, samples, figures, course: courseOf(samples, move, profile.continuous) };
   const verdicts = RULES.flatMap((rule) => rule(look) ?? []);
   return { figures, verdicts, meets: meetsTarget(figures, verdicts, profile, move) };
 }
