@@ -65,9 +65,13 @@ export function proportionalWhy(profile: Profile, gains: Gains, learnt: LearntMo
     brakes < longestReach(profile)
       ? `Full output until ${amount(brakes, profile)} before the target, less from there`
       : `The whole move asks for ${outputText((gains.kp * longestReach(profile)) / full, profile)}`;
-  const ending = final
-    ? `P alone should do: it rests within ${amount(rest, profile)} of the target.`
-    : `It may rest up to ${amount(rest, profile)} short, where Kp no longer asks for the ${outputText(response.breakaway, profile)} that starts it moving.`;
+  const { tolerance } = profile.target;
+  const stiff = `it could not start again from within ${amount(rest, profile)} of the target, where Kp asks for less than the ${outputText(response.breakaway, profile)} that starts it`;
+  const ending = !final
+    ? `It may rest up to ${amount(rest, profile)} short, where Kp no longer asks for the ${outputText(response.breakaway, profile)} that starts it moving.`
+    : rest <= tolerance
+      ? `P alone should do: it rests within ${amount(rest, profile)} of the target.`
+      : `P alone should do: it comes in with just the speed to end inside ${amount(tolerance, profile)}, though ${stiff}.`;
   return `${saturates}. It needs ${seconds(response.lag)} to follow its output. ${ending}`;
 }
 

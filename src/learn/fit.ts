@@ -2,6 +2,7 @@ import type { Matrix } from 'ml-matrix';
 import type { Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import type { Drive } from './evidence.ts';
+import { exploreAround } from './explore.ts';
 import type { Prior } from './learnt.ts';
 import { covarianceOf, leastSquares } from './least-squares.ts';
 import { type Answers, answersTo, fitPercent } from './output-error.ts';
@@ -20,6 +21,8 @@ export interface Fitted {
   readonly fit: number;
   /** One sigma of what is left, profile unit. */
   readonly residual: number;
+  /** What the sensor alone would leave, profile unit. */
+  readonly floor: number;
   /** Sum of squares of the residuals without the prior's, for comparing row shifts. */
   readonly misfit: number;
 }
@@ -39,7 +42,9 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
     residualsFor({ drives, answers, centre, deviations, free, delayScale, sigma, weight });
   const first = bestStart(problem(20 * floor, 1), centre, free, deviations, delayScale, profile);
   // First as if every residual counted: what the prior would pull aside must not pass for a poor model.
-  const rough = leastSquares(problem(5 * floor, 1), first, options(20, free, deviations));
+  const open = problem(5 * floor, 1);
+  const near = leastSquares(open, first, options(14, free, deviations));
+  const rough = leastSquares(open, exploreAround(open, near), options(10, free, deviations));
   const roughResponse = decodeAt(rough.parameters, centre, free, delayScale);
   const sigma = Math.max(floor, spreadOf(drives, answers, roughResponse));
   const weight = independence(drives, answers.of(roughResponse));
@@ -56,6 +61,7 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
     delayScale,
     fit: fitPercent(drives, answers.of(response)),
     residual,
+    floor,
     misfit: squaredMisfit(drives, answers.of(response)),
   };
 }
@@ -139,7 +145,7 @@ function bestStart(
   const lagAt = free.indexOf(PARAMETERS.indexOf('lag'));
   let best = base;
   let least = Number.POSITIVE_INFINITY;
-  for (const delay of [0.3, 2, 6]) {
+  for (const delay of [0.04, 0.6, 2, 6]) {
     for (const speed of wide ? [-1.4, -0.7, 0, 0.7, 1.4] : [-0.3, 0, 0.3]) {
       for (const lag of wide ? [-1, 0, 1] : [-0.3, 0.3]) {
         const start = base.slice();

@@ -65,7 +65,7 @@ const REASONS: Readonly<Record<Unusable, string>> = {
 };
 
 /** How much better the shifted rows must explain the motion before they are believed. */
-const SHIFT_GAIN = 0.8;
+const SHIFT_GAIN = 0.6;
 
 function fitWithRows(
   drives: readonly Drive[],
@@ -74,9 +74,10 @@ function fitWithRows(
 ): { fitted: Fitted; rowShift: number } {
   const { profile } = request;
   const plain = fitModel(drives, profile, prior, 0);
-  // Only a dead time pressed against zero can hide a row that acted earlier; a rebuilt output has no row to be wrong.
-  const suspicious = plain.response.delay < 0.3 * profile.controller.period && drives.every((drive) => !drive.rebuilt);
-  if (!suspicious || plain.fit > 99.9) return { fitted: plain, rowShift: 0 };
+  // Only a dead time pressed against zero can hide a row that acted earlier, and only a fit that leaves more than the sensor's
+  // own steps has anything to gain; a rebuilt output has no row to be wrong.
+  const pressed = plain.response.delay < 0.3 * profile.controller.period && drives.every((drive) => !drive.rebuilt);
+  if (!pressed || plain.residual < 2 * plain.floor) return { fitted: plain, rowShift: 0 };
   const moved = fitModel(drives, profile, prior, 1);
   return moved.misfit < SHIFT_GAIN * plain.misfit ? { fitted: moved, rowShift: 1 } : { fitted: plain, rowShift: 0 };
 }
