@@ -307,7 +307,8 @@ function scoreFor(
   return base + fits;
 }
 
-function knownUnit(text: string): Unit | null {
+/** The unit that a header means by a word: `deg`, `°/s`, `rad_s`; null when it is none that is known. */
+export function knownUnit(text: string): Unit | null {
   return UNIT_WORDS[text] ?? UNIT_WORDS[text.toLowerCase()] ?? null;
 }
 
