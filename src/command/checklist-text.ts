@@ -47,11 +47,18 @@ export function trialLine(proposal: Proposal, profile: Profile): string {
   const resolution = profile.sensor?.resolution ?? 0;
   const end = (value: number) => formatQuantity(value, profile.unit, resolution);
   const { move, outputCap, duration } = proposal;
-  const cap = `${formatNumber(outputCap * fullOutput(profile.controller), 3)} ${OUTPUT_WORDS[profile.controller.output.unit]}`;
-  return `${end(move.from)} → ${end(move.to)}, recorded for ${formatNumber(duration, 2)} s, at most ${cap}`;
+  return `${end(move.from)} → ${end(move.to)}, recorded for ${formatNumber(duration, 2)} s, ${capText(outputCap, profile)}`;
 }
 
-const OUTPUT_WORDS = { fraction: 'of full output', percent: '% output', volts: 'V output' } as const;
+const OUTPUT_WORDS = { fraction: '', percent: ' %', volts: ' V' } as const;
+
+/** An output cap (fraction of full) as the controller says it. */
+export function capText(outputCap: number, profile: Profile): string {
+  if (outputCap >= 1) return 'full output allowed';
+  const { unit } = profile.controller.output;
+  const own = `${formatNumber(outputCap * fullOutput(profile.controller), 3)}${OUTPUT_WORDS[unit]} output`;
+  return unit === 'percent' ? `at most ${own}` : `at most ${own} (${formatNumber(100 * outputCap, 2)} % of full)`;
+}
 
 /** A whole checklist on paper: figures, boxes to tick, when to stop, what comes after. */
 export function checklistText(checklist: Checklist, profile: Profile, width: number): string {

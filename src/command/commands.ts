@@ -1,4 +1,25 @@
 import type { ListedCommand } from './command.ts';
 
 /** Every command, in the order of the help page. A new command is a file and a line here. */
-export const COMMANDS: readonly ListedCommand[] = [];
+export const COMMANDS: readonly ListedCommand[] = [
+  {
+    name: 'demo',
+    summary: 'a complete guided run on a simulated mechanism, with nothing to set up',
+    load: async () => (await import('./demo.ts')).definition,
+  },
+  {
+    name: 'tune',
+    summary: 'from no gains to proven gains in few trials, without a person',
+    load: async () => (await import('./tune.ts')).definition,
+  },
+  {
+    name: 'read',
+    summary: 'what a logged trial shows: figures, what is wrong, chart',
+    load: async () => (await import('./read.ts')).definition,
+  },
+  {
+    name: 'fit',
+    summary: 'the response model that logs support, with 95 % intervals',
+    load: async () => (await import('./fit.ts')).definition,
+  },
+];

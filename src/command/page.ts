@@ -1,20 +1,20 @@
 import stringWidth from 'string-width';
 import type { Style } from '../chart/spec.ts';
 
-/** Breaks a text at blanks into lines of at most `width` columns; a word that is longer stands alone. */
+/** Breaks a text at blanks into lines of at most `width` columns; a word that is longer stands alone. Indents are kept. */
 export function wrapped(text: string, width: number): readonly string[] {
   return text.split('\n').flatMap((paragraph) => {
+    const indent = /^ */.exec(paragraph)?.[0] ?? '';
     const lines: string[] = [];
-    let line = '';
-    for (const word of paragraph.split(' ')) {
-      if (line !== '' && stringWidth(line) + 1 + stringWidth(word) > width) {
+    let line: string | null = null;
+    for (const word of paragraph.slice(indent.length).split(' ')) {
+      if (line !== null && stringWidth(line) + 1 + stringWidth(word) > width) {
         lines.push(line);
-        line = word;
-      } else {
-        line = line === '' ? word : `${line} ${word}`;
+        line = null;
       }
+      line = line === null ? indent + word : `${line} ${word}`;
     }
-    return [...lines, line];
+    return [...lines, line ?? ''];
   });
 }
 

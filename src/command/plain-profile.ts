@@ -1,7 +1,8 @@
 import type { ControllerSettings, OutputUnit } from '../controller/settings.ts';
 import { NO_GAINS } from '../controller/settings.ts';
+import { knownUnit } from '../log/columns.ts';
 import type { LogReading } from '../log/read.ts';
-import { type Kind, POSITION_UNITS, type Profile, SPEED_UNITS, type Unit } from '../mechanism/profile.ts';
+import type { Kind, Profile, Unit } from '../mechanism/profile.ts';
 import { unitScale } from '../mechanism/units.ts';
 
 /** A profile made from nothing but a log, and what had to be assumed for it. */
@@ -26,11 +27,12 @@ const STAND_IN: Unit = 'rad';
  * @param said the unit that a person gave for the readings, or null
  */
 export function plainProfile(reading: LogReading, said: Unit | null, saidOutput: OutputUnit | null): PlainProfile {
-  const named = said ?? knownUnit(reading.columns.measured?.unit ?? null);
+  const inHeader = reading.columns.measured?.unit ?? null;
+  const named = said ?? (inHeader === null ? null : knownUnit(inHeader));
   const unit = named ?? STAND_IN;
   const header = reading.columns.measured?.header ?? '';
   const perSecond = named === null ? /speed|vel|rpm/i.test(header) : unitScale(named).perSecond;
-  const largest = Math.max(1e-12, ...reading.moves.map(({ from, to }) => Math.abs(to - from)));
+  const largest = Math.max(1e-12, ...movesOf(reading).map(([from, to]) => Math.abs(to - from)));
   const longest = Math.max(0, ...reading.moves.map(({ samples }) => samples.time.at(-1) ?? 0)) || reading.duration;
   const output = outputOf(reading, saidOutput);
   const profile: Profile = {
@@ -53,7 +55,7 @@ export function plainProfile(reading: LogReading, said: Unit | null, saidOutput:
       tolerance: USUAL_TOLERANCE * largest,
       overshoot: USUAL_OVERSHOOT,
       settlingTime: longest,
-      moves: reading.moves.map(({ from, to }) => [from, to]),
+      moves: movesOf(reading),
     },
     gains: NO_GAINS,
     hazards: [],
@@ -64,6 +66,18 @@ export function plainProfile(reading: LogReading, said: Unit | null, saidOutput:
     ...(reading.samples.output === null ? [] : [`Output is taken as ${output.unit}, ${output.min} to ${output.max}.`]),
   ];
   return { profile, unitNamed: named !== null, assumed };
+}
+
+/** The moves of a log; of one without a setpoint, the whole range it covered. */
+function movesOf({ moves, samples }: LogReading): readonly (readonly [from: number, to: number])[] {
+  if (moves.length > 0) return moves.map(({ from, to }) => [from, to]);
+  let low = Number.POSITIVE_INFINITY;
+  let high = Number.NEGATIVE_INFINITY;
+  for (const value of samples.measured) {
+    low = Math.min(low, value);
+    high = Math.max(high, value);
+  }
+  return [[low, high]];
 }
 
 /** A text about a log without a unit: the stand-in becomes "units". */
@@ -80,10 +94,6 @@ const PLAIN_CONTROLLER: Omit<ControllerSettings, 'period' | 'output'> = {
   sumLimit: null,
   slew: null,
 };
-
-function knownUnit(text: string | null): Unit | null {
-  return [...POSITION_UNITS, ...SPEED_UNITS].find((unit) => unit === text?.trim()) ?? null;
-}
 
 function kindOf(unit: Unit, perSecond: boolean): Kind {
   if (unitScale(unit).dimension === 'length') return 'travel';

@@ -27,6 +27,8 @@ export type RunEvent =
 
 export interface RunTrials {
   readonly history: RunHistory;
+  /** How many of its trials were told already; the others are told first. */
+  readonly told: number;
   /** The coach: `nextStep` of src/coach. */
   readonly next: (history: RunHistory) => CoachStep;
   readonly plant: TrialPlant;
@@ -58,7 +60,7 @@ export type RunEnd = { readonly history: RunHistory } & (
  */
 export async function runTrials(run: RunTrials): Promise<RunEnd> {
   let history = run.history;
-  let told = history.trials.length;
+  let { told } = run;
   while (true) {
     await breathe();
     if (run.interrupted.aborted) return { kind: 'interrupted', history };

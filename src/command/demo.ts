@@ -1,0 +1,162 @@
+import { nextStep } from '../coach/next-step.ts';
+import type { TrialReading } from '../coach/step.ts';
+import type { LearntModel } from '../learn/learnt.ts';
+import { responseOf } from '../mechanism/plant-of.ts';
+import type { Profile } from '../mechanism/profile.ts';
+import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
+import type { ResponseModel } from '../plant/response-model.ts';
+import { simulatedMechanismOf } from '../trial/simulate.ts';
+import { type CommandContext, type CommandDefinition, present } from './command.ts';
+import { tuneDocument } from './documents.ts';
+import { EXIT, type ExitCode } from './edge.ts';
+import { unusable } from './failure.ts';
+import { findProfile } from './find-profile.ts';
+import { columned, heading, spelt, wrapped } from './page.ts';
+import { runTrials } from './run-trials.ts';
+import { simulatedPlant } from './sim-plant.ts';
+import { outcomeText, proposalText, readingText, type TrialPage } from './trial-page.ts';
+
+export const definition: CommandDefinition = {
+  examples: [
+    { line: 'holdfast demo', does: 'the guided run on a lift' },
+    { line: 'holdfast demo turret --seed 7', does: 'on another starter, with another machine behind it' },
+  ],
+  define: (command, runner) => {
+    command
+      .argument('[profile]', 'a starter, a name in the profiles folder, or a path', 'lift')
+      .action((name: string) => runner((context) => demo(name, context)));
+  },
+};
+
+/** What the machine behind a demo differs in from its sheet, as machines do: factors, and s of delay. All invented. */
+const BEHIND = { mass: 1.2, friction: 1.35, delay: 0.006 };
+
+/** A complete guided run on a simulated mechanism; nothing is written, and the same seed tells the same story. */
+async function demo(name: string, context: CommandContext): Promise<ExitCode> {
+  const { profile } = await findProfile(name, context);
+  const behind = machineBehind(profile);
+  const mechanism = simulatedMechanismOf(behind);
+  if (mechanism === null) {
+    throw unusable(
+      `the profile "${profile.name}" lacks numbers of the machine, so there is nothing to simulate.`,
+      'Fill in motor, drive and load, or see a starter: holdfast demo lift',
+      { file: `${profile.name}.json`, field: 'motor' },
+    );
+  }
+  const seed = context.seed ?? 1;
+  const page: TrialPage = { profile, width: context.width, style: context.style };
+  const story = (text: string) => {
+    if (!context.json) context.edge.out(`${spelt(text, context.style)}\n\n`);
+  };
+  story(openingText(page));
+  const whys: string[] = [];
+  const end = await runTrials({
+    history: { profile, trials: [], maxTrials: 12, minutesLeft: null, seed },
+    told: 0,
+    next: nextStep,
+    plant: simulatedPlant(mechanism, profile, seed),
+    admit: async () => ({ open: true, permit: null }),
+    keep: async (_record, proposal) => {
+      whys.push(proposal.why);
+    },
+    tell: (event) => {
+      if (event.kind === 'proposed') story(proposalText(event.proposal, event.trial, page));
+      else story(readingText(event.record, event.reading, page));
+    },
+    interrupted: context.edge.interrupted,
+  });
+  if (end.kind === 'failed') throw end.failure;
+  if (end.kind === 'interrupted') return EXIT.interrupted;
+  const { outcome, reading } = end;
+  const trials = end.history.trials.map((record, k) => {
+    const read: TrialReading | undefined = reading.trials[k];
+    return read ? [{ record, reading: read, log: null, why: whys[k] ?? '' }] : [];
+  });
+  present(context, {
+    json: () => tuneDocument(profile.name, outcome, trials.flat(), reading.learnt),
+    text: () => {
+      const told = [
+        outcomeText(outcome, end.history.trials.length, page),
+        '',
+        ...comparison(profile, reading.learnt, responseOf(behind)),
+        '',
+        ...closingLines(profile, context),
+        '',
+      ];
+      return spelt(told.join('\n'), context.style);
+    },
+  });
+  return outcome.met ? EXIT.done : EXIT.answerIsNo;
+}
+
+/** The machine that the demo's trials run on: the sheet's, a little heavier, stiffer and later. */
+function machineBehind(profile: Profile): Profile {
+  const { load, friction, sensor } = profile;
+  const by = (value: number | null, factor: number) => (value === null ? null : value * factor);
+  return {
+    ...profile,
+    load: load && { ...load, mass: by(load.mass, BEHIND.mass), inertia: by(load.inertia, BEHIND.mass) },
+    friction: friction && {
+      drag: by(friction.drag, BEHIND.friction),
+      breakaway: by(friction.breakaway, BEHIND.friction),
+    },
+    sensor: sensor && {
+      ...sensor,
+      delay: sensor.delay + BEHIND.delay,
+      noise: Math.max(sensor.noise, sensor.resolution / 4),
+    },
+  };
+}
+
+function openingText({ profile, width, style }: TrialPage): string {
+  const { target, unit } = profile;
+  const amount = (value: number) => formatQuantity(value, unit);
+  const moves = target.moves.map(([from, to]) => `${amount(from)} → ${amount(to)}`).join(' and ');
+  return [
+    heading(`Holdfast demo · ${profile.title}`, width, style),
+    ...wrapped(
+      `Invented and simulated: nothing moves, and nothing is written. The machine behind it is ${Math.round(100 * (BEHIND.mass - 1))} % heavier than its sheet says and rubs ${Math.round(100 * (BEHIND.friction - 1))} % more, as machines do; the trials have to find that out. No gain shown here is fit for a real machine.`,
+      width,
+    ),
+    '',
+    ...wrapped(
+      `Target: within ${amount(target.tolerance)}, at most ${formatNumber(target.overshoot, 2)} % overshoot, settled in ${formatNumber(target.settlingTime, 2)} s, on ${moves}. Each trial below says first what it tries, why, and what to expect; then what came of it.`,
+      width,
+    ),
+  ].join('\n');
+}
+
+/** The sheet, what the trials taught, and what the machine really is: side by side. */
+function comparison(profile: Profile, learnt: LearntModel | null, truth: ResponseModel | null): readonly string[] {
+  const sheet = responseOf(profile);
+  if (learnt === null || truth === null || sheet === null) return [];
+  const perSecond = profile.quantity === 'speed' ? '' : '/s';
+  const speed = (value: number) => `${formatQuantity(value, profile.unit)}${perSecond}`;
+  const percent = (value: number) => `${formatNumber(100 * value, 3)} %`;
+  const ms = (value: number) => `${formatNumber(1000 * value, 3)} ms`;
+  const row = (label: string, key: 'topSpeed' | 'lag' | 'drag' | 'hold', show: (value: number) => string) => {
+    const { best, low, high } = learnt.intervals[key];
+    return [label, show(sheet[key]), show(best), `${show(low)} to ${show(high)}`, show(truth[key])];
+  };
+  const carries = profile.kind === 'lift' || profile.kind === 'arm';
+  const rows = [
+    ['', 'sheet', 'learnt', '95 % interval', 'true'],
+    row('top speed', 'topSpeed', speed),
+    row('lag', 'lag', ms),
+    row('drag', 'drag', percent),
+    ...(carries ? [row('hold', 'hold', percent)] : []),
+  ];
+  return [
+    'What the trials found out',
+    ...columned(rows, ['left', 'right', 'right', 'left', 'right']).map((line) => `  ${line}`),
+  ];
+}
+
+function closingLines(profile: Profile, { width }: CommandContext): readonly string[] {
+  const rows = [
+    [`holdfast new my-${profile.name} --from ${profile.name}`, 'a profile of your own to fill in'],
+    [`holdfast checklist ${profile.name}`, 'what is ticked before each powered trial'],
+    ['holdfast read LOG', 'what one of your own logs shows'],
+  ];
+  return ['From here', ...columned(rows, ['left', 'left']).flatMap((line) => wrapped(`  ${line}`, width))];
+}
