@@ -174,15 +174,17 @@ describe('margins of the sampled loop', () => {
 });
 
 describe('margins of published loops', () => {
-  const polynomialLoop = (numerator: readonly number[], denominator: readonly number[], dead = 0) => (w: number) => {
-    const s = { re: 0, im: w };
-    const n = evaluate(numerator, s);
-    const d = evaluate(denominator, s);
-    const size = d.re * d.re + d.im * d.im;
-    const value = { re: (n.re * d.re + n.im * d.im) / size, im: (n.im * d.re - n.re * d.im) / size };
-    const turn = { re: Math.cos(w * dead), im: -Math.sin(w * dead) };
-    return { re: value.re * turn.re - value.im * turn.im, im: value.re * turn.im + value.im * turn.re };
-  };
+  const polynomialLoop =
+    (numerator: readonly number[], denominator: readonly number[], dead = 0) =>
+    (w: number) => {
+      const s = { re: 0, im: w };
+      const n = evaluate(numerator, s);
+      const d = evaluate(denominator, s);
+      const size = d.re * d.re + d.im * d.im;
+      const value = { re: (n.re * d.re + n.im * d.im) / size, im: (n.im * d.re - n.re * d.im) / size };
+      const turn = { re: Math.cos(w * dead), im: -Math.sin(w * dead) };
+      return { re: value.re * turn.re - value.im * turn.im, im: value.re * turn.im + value.im * turn.re };
+    };
 
   test('1/(s³+2s²+3s+4): gain margin 2 at 1.7321 rad/s, Ms 2.3982', () => {
     // python-control, control/tests/margin_test.py (values only).
