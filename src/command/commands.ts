@@ -22,4 +22,29 @@ export const COMMANDS: readonly ListedCommand[] = [
     summary: 'the response model that logs support, with 95 % intervals',
     load: async () => (await import('./fit.ts')).definition,
   },
+  {
+    name: 'predict',
+    summary: 'the response to expect of a set of gains, its band and its margins',
+    load: async () => (await import('./predict.ts')).definition,
+  },
+  {
+    name: 'checklist',
+    summary: 'what is ticked before the next powered trial, with its own figures',
+    load: async () => (await import('./checklist.ts')).definition,
+  },
+  {
+    name: 'gains',
+    summary: 'the same gains as another controller writes them',
+    load: async () => (await import('./gains.ts')).definition,
+  },
+  {
+    name: 'profiles',
+    summary: 'the mechanisms that are known, and the starters',
+    load: async () => (await import('./profiles.ts')).definition,
+  },
+  {
+    name: 'new',
+    summary: 'a profile of your own, copied from a starter or another',
+    load: async () => (await import('./new.ts')).definition,
+  },
 ];

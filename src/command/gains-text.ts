@@ -8,6 +8,7 @@ export interface GainEntry {
   readonly label: string;
   /** "off" where the term is absent. */
   readonly value: string;
+  readonly number: number | null;
   readonly unit: string;
 }
 
@@ -25,6 +26,7 @@ export function gainEntries(
   return gainLines(entered, convention, profile.unit).map(({ label, value, unit }) => ({
     label,
     value: value === null ? 'off' : formatNumber(value, 5),
+    number: value,
     unit,
   }));
 }

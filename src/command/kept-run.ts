@@ -49,7 +49,7 @@ export async function openKeeper(store: Store, profile: Profile, wish: RunWish):
   const { fresh, ...start } = wish;
   const open = fresh ? null : await openRunOf(store, profile.name, digest, wish.plant);
   let run = open ?? (await startRun(store, { profile: profile.name, profileDigest: digest, ...start }));
-  const resumed = await Promise.all(run.trials.map((kept) => recordOf(kept, run, store, profile)));
+  const resumed = await recordsOf(run, store, profile);
   return {
     run: () => run,
     folder: join(store.folder, 'trials', profile.name, run.id),
@@ -83,9 +83,14 @@ export async function openKeeper(store: Store, profile: Profile, wish: RunWish):
 }
 
 /** The history of a run as the coach wants it. */
-export function historyOf(keeper: RunKeeper, profile: Profile, minutesLeft: number | null): RunHistory {
+export function historyOf(keeper: RunKeeper, profile: Profile): RunHistory {
   const { maxTrials, seed } = keeper.run();
-  return { profile, trials: keeper.resumed, maxTrials, minutesLeft, seed };
+  return { profile, trials: keeper.resumed, maxTrials, minutesLeft: null, seed };
+}
+
+/** The trials of a kept run, their logs read and checked. @throws {ProfileError} when a log is gone or changed */
+export function recordsOf(run: KeptRun, store: Store, profile: Profile): Promise<readonly TrialRecord[]> {
+  return Promise.all(run.trials.map((kept) => recordOf(kept, run, store, profile)));
 }
 
 async function recordOf(kept: KeptTrial, run: KeptRun, store: Store, profile: Profile): Promise<TrialRecord> {

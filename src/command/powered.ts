@@ -6,11 +6,34 @@ import { checklistText, trialLine } from './checklist-text.ts';
 import type { CommandContext } from './command.ts';
 import { type Failure, refused } from './failure.ts';
 import { heading, spelt, wrapped } from './page.ts';
-import { dangersOf } from './planned-trial.ts';
+import { dangersOf, type TrialDangers } from './planned-trial.ts';
 import type { Admission, AskedTrial } from './run-trials.ts';
 
 /** Rules that only a person's ticks and name can meet; the others are checked before anyone is asked to tick. */
 const PERSONAL: readonly GateRefusal['rule'][] = ['ticks', 'name', 'lapsed', 'cap', 'changed'];
+
+/** What the gate is asked about a proposed trial, before anyone has ticked or signed. */
+export function gateRequest(profile: Profile, asked: AskedTrial, dangers: TrialDangers, now: number): GateRequest {
+  return {
+    profile,
+    profileDigest: profileDigest(profile),
+    trial: asked.trial,
+    outputCap: asked.proposal.outputCap,
+    stage: asked.proposal.stage,
+    directionChecked: asked.history.trials.some(({ stage }) => stage === 'ready'),
+    outside: dangers.outside,
+    growing: dangers.growing,
+    items: dangers.checklist.items,
+    signature: null,
+    now,
+  };
+}
+
+/** Why the gate refuses whoever ticks: the profile, the direction check, the rehearsals. */
+export function fixedRefusals(request: GateRequest): readonly GateRefusal[] {
+  const opening = openGate(request);
+  return opening.open ? [] : opening.reasons.filter(({ rule }) => !PERSONAL.includes(rule));
+}
 
 /**
  * Leave for the powered trials of one run: prints each trial's checklist, has it ticked item by item and signed at the
@@ -21,26 +44,13 @@ export function poweredAdmission(
   seed: number,
   context: CommandContext,
 ): (asked: AskedTrial) => Promise<Admission> {
-  const digest = profileDigest(profile);
   const { edge } = context;
   let lastName = '';
-  return async ({ proposal, trial, history, reading }) => {
-    const dangers = dangersOf(profile, reading.learnt, proposal, seed);
-    const request = (signature: Signature | null): GateRequest => ({
-      profile,
-      profileDigest: digest,
-      trial,
-      outputCap: proposal.outputCap,
-      stage: proposal.stage,
-      directionChecked: history.trials.some(({ stage }) => stage === 'ready'),
-      outside: dangers.outside,
-      growing: dangers.growing,
-      items: dangers.checklist.items,
-      signature,
-      now: edge.now(),
-    });
-    const before = openGate(request(null));
-    const fixed = before.open ? [] : before.reasons.filter(({ rule }) => !PERSONAL.includes(rule));
+  return async (asked) => {
+    const { proposal, trial } = asked;
+    const dangers = dangersOf(profile, asked.reading.learnt, proposal, seed);
+    const request = gateRequest(profile, asked, dangers, edge.now());
+    const fixed = fixedRefusals(request);
     if (fixed.length > 0) return { open: false, failure: refusal(trial, fixed) };
     if (!edge.terminal.input || !edge.terminal.errors) return { open: false, failure: nobodyThere(trial) };
     const say = (text: string) => edge.err(`${spelt(text, context.style)}\n`);
@@ -50,8 +60,9 @@ export function poweredAdmission(
     const answer = await ticked(dangers.checklist, lastName, context);
     if (answer === null || edge.interrupted.aborted) return { open: 'interrupted' };
     lastName = answer.name;
-    const signature = { ...answer, at: edge.now(), outputCap: proposal.outputCap, profileDigest: digest };
-    const opening = openGate(request(signature));
+    const { outputCap, profileDigest } = request;
+    const signature = { ...answer, at: edge.now(), outputCap, profileDigest };
+    const opening = openGate({ ...request, signature, now: edge.now() });
     return opening.open
       ? { open: true, permit: opening.permit }
       : { open: false, failure: refusal(trial, opening.reasons) };
@@ -78,7 +89,8 @@ async function ticked(
   return { name: name.trim() === '' ? lastName : name.trim(), ticked: ids };
 }
 
-function refusal(trial: number, reasons: readonly GateRefusal[]): Failure {
+/** A refusal of the gate as a failure to be told. */
+export function refusal(trial: number, reasons: readonly GateRefusal[]): Failure {
   const shortest = reasons.slice(0, 4);
   return refused(
     `Trial ${trial} is not powered. ${shortest.map(({ what }) => what).join(' ')}`,

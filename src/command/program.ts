@@ -6,20 +6,22 @@ import { type Edge, EXIT, type ExitCode } from './edge.ts';
 import { explain } from './explain.ts';
 import { errorDocument, errorText, wrongUse } from './failure.ts';
 import { wholeNumber } from './numbers.ts';
+import { columned, spelt, wrapped } from './page.ts';
 import { pageWidth, styleOf } from './style.ts';
 import { VERSION } from './version.ts';
 
 const OPENING = `Holdfast: gains for motor-driven mechanisms, in few trials, with reasons.
 With no arguments it opens the console.`;
 
-const CLOSING = `
-Examples:
-  holdfast demo                      a complete guided run, simulated, nothing to set up
-  holdfast read lift-03.csv          what a logged trial shows, and what is wrong
-  holdfast tune lift --plant sim     the whole procedure on the profile's physics
+const EXAMPLES: readonly (readonly [line: string, does: string])[] = [
+  ['holdfast demo', 'a complete guided run, simulated'],
+  ['holdfast read lift-03.csv', 'what a logged trial shows'],
+  ['holdfast new left-lift --from lift', 'a profile to fill in'],
+  ['holdfast tune left-lift --plant sim', 'the whole procedure on its physics'],
+];
 
-Exit codes: 0 done · 1 done, and the answer is no · 2 wrong use · 3 input that cannot be used ·
-4 refused for safety · 5 a defect in Holdfast · 130 ended by Ctrl-C`;
+const EXITS =
+  'Exit codes: 0 done · 1 done, and the answer is no · 2 wrong use · 3 input that cannot be used · 4 refused for safety · 5 a defect in Holdfast · 130 ended by Ctrl-C';
 
 interface GlobalOptions {
   readonly json?: true;
@@ -45,7 +47,9 @@ export type OpenConsole = (options: ConsoleOptions) => Promise<ExitCode>;
  */
 export async function runProgram(words: readonly string[], edge: Edge, openConsole: OpenConsole): Promise<ExitCode> {
   let exit: ExitCode = EXIT.done;
-  const program = programOf(edge, (code) => {
+  // Help and errors are told before or without a parse: their style is read off the words.
+  const style = styleOf({ ascii: words.includes('--ascii'), colour: !words.includes('--no-colour') }, edge);
+  const program = programOf(edge, style, (code) => {
     exit = code;
   });
   try {
@@ -55,19 +59,20 @@ export async function runProgram(words: readonly string[], edge: Edge, openConso
     if (error instanceof CommanderError && error.exitCode === 0) return EXIT.done;
     if (error instanceof CommanderError && error.code === 'commander.help')
       return withoutCommand(program, edge, openConsole);
-    return tell(error, words.includes('--json'), edge);
+    return tell(error, words.includes('--json'), style, edge);
   }
 }
 
 async function withoutCommand(program: Command, edge: Edge, openConsole: OpenConsole): Promise<ExitCode> {
   const context = contextOf(program, edge);
   if (edge.terminal.input && edge.terminal.output && !context.json) return openConsole(context);
-  if (context.json) return tell(wrongUse('No command was given.', 'holdfast --help lists the commands.'), true, edge);
-  edge.err(program.helpInformation());
+  if (context.json)
+    return tell(wrongUse('No command was given.', 'holdfast --help lists the commands.'), true, context.style, edge);
+  edge.err(spelt(program.helpInformation() + closingText(context.width), context.style));
   return EXIT.wrongUse;
 }
 
-function tell(error: unknown, json: boolean, edge: Edge): ExitCode {
+function tell(error: unknown, json: boolean, style: Style, edge: Edge): ExitCode {
   const failure =
     error instanceof CommanderError
       ? wrongUse(
@@ -76,14 +81,14 @@ function tell(error: unknown, json: boolean, edge: Edge): ExitCode {
         )
       : explain(error);
   if (json) edge.out(`${JSON.stringify(errorDocument(failure), null, 2)}\n`);
-  else edge.err(errorText(failure));
+  else edge.err(spelt(errorText(failure), style));
   if (failure.exit === EXIT.defect && edge.env.HOLDFAST_DEBUG === '1' && error instanceof Error) {
     edge.err(`${error.stack ?? error.message}\n`);
   }
   return failure.exit;
 }
 
-function programOf(edge: Edge, done: (code: ExitCode) => void): Command {
+function programOf(edge: Edge, style: Style, done: (code: ExitCode) => void): Command {
   const program = new Command('holdfast');
   const width = pageWidth(edge);
   program
@@ -101,9 +106,14 @@ function programOf(edge: Edge, done: (code: ExitCode) => void): Command {
       showGlobalOptions: true,
       visibleGlobalOptions: (command) => globalOptions(command),
     })
-    .configureOutput({ writeOut: edge.out, writeErr: () => {}, getOutHelpWidth: () => width })
+    .configureOutput({
+      writeOut: (text) => edge.out(spelt(text, style)),
+      writeErr: () => {},
+      getOutHelpWidth: () => width,
+    })
+    .helpCommand('help [command]', 'print this page, or a command’s')
     .exitOverride()
-    .addHelpText('after', CLOSING);
+    .addHelpText('after', closingText(width));
   for (const listed of COMMANDS) addBare(program, listed);
   program.hook('preSubcommand', async (_program, command) => {
     const listed = COMMANDS.find(({ name }) => name === command.name());
@@ -135,6 +145,11 @@ function contextOf(program: Command, edge: Edge): CommandContext {
     style: styleOf({ ascii: options.ascii === true, colour: options.colour }, edge),
     width: pageWidth(edge),
   };
+}
+
+function closingText(width: number): string {
+  const examples = columned(EXAMPLES, ['left', 'left']).map((line) => `  ${line}`);
+  return ['', 'Examples:', ...examples, '', ...wrapped(EXITS, width)].join('\n');
 }
 
 function exampleText(examples: readonly Example[]): string {

@@ -69,11 +69,14 @@ async function tune(name: string, options: TuneOptions, context: CommandContext)
   const page: TrialPage = { profile, width: context.width, style: context.style };
   const story = (text: string) => (context.json ? () => {} : context.edge.out)(`${spelt(text, context.style)}\n\n`);
   tellOpening(keeper, context);
+  const begun = context.edge.now();
+  const minutesLeft = () =>
+    options.minutes === undefined ? null : options.minutes - (context.edge.now() - begun) / 60_000;
   const powered = wish.kind === 'cmd' && options.plantIsSimulated !== true;
   const end = await runTrials({
-    history: historyOf(keeper, profile, options.minutes ?? null),
+    history: historyOf(keeper, profile),
     told: keeper.run().trials.filter(({ figures }) => figures !== null).length,
-    next: nextStep,
+    next: (history) => nextStep({ ...history, minutesLeft: minutesLeft() }),
     plant,
     admit: powered ? poweredAdmission(profile, seed, context) : async () => ({ open: true, permit: null }),
     keep: keeper.keep,
