@@ -128,11 +128,22 @@ function settlingTimeOf(course: Course, options: FigureOptions, start: number): 
   while (outside >= 0 && Math.abs(error[outside] ?? 0) <= options.tolerance) outside--;
   if (outside === last) return null;
   if (outside < 0) return end - start >= dwell ? 0 : null;
-  const before = Math.abs(error[outside] ?? 0);
-  const after = Math.abs(error[outside + 1] ?? 0);
-  const t0 = time[outside] ?? 0;
-  const entered = t0 + ((before - options.tolerance) / (before - after || 1)) * ((time[outside + 1] ?? 0) - t0);
+  const entered = entryTime(
+    time[outside] ?? 0,
+    time[outside + 1] ?? 0,
+    error[outside] ?? 0,
+    error[outside + 1] ?? 0,
+    options.tolerance,
+  );
   return end - entered >= dwell - 1e-9 ? entered - start : null;
+}
+
+/**
+ * When an error that goes from outside the tolerance to inside crossed the edge it was beyond, by linear interpolation.
+ */
+export function entryTime(t0: number, t1: number, outside: number, inside: number, tolerance: number): number {
+  const edge = Math.sign(outside) * tolerance;
+  return t0 + ((outside - edge) / (outside - inside || 1)) * (t1 - t0);
 }
 
 /** Mean error over the last fifth of the record, and whether the speed there is nil to the sensor's resolution. */

@@ -1,7 +1,7 @@
 import { type ControllerSettings, fullOutput } from '../controller/settings.ts';
 import type { Move } from '../mechanism/profile.ts';
 import { straightMove, wrapError } from './course.ts';
-import { DWELL } from './figures.ts';
+import { DWELL, entryTime } from './figures.ts';
 import { reversalsOf } from './reversals.ts';
 import type { TrialColumns } from './runner.ts';
 
@@ -59,14 +59,15 @@ function settledAt(columns: TrialColumns, lastOutside: number, rows: number, opt
   const end = time[rows - 1] ?? 0;
   if (lastOutside < 0) return end - (time[0] ?? 0) >= DWELL ? 0 : null;
   if (lastOutside >= rows - 1) return null;
-  const before = Math.abs(wrapError((setpoint[lastOutside] ?? 0) - (measured[lastOutside] ?? 0), options.continuous));
-  const after = Math.abs(
-    wrapError((setpoint[lastOutside + 1] ?? 0) - (measured[lastOutside + 1] ?? 0), options.continuous),
+  const errorAt = (row: number) => wrapError((setpoint[row] ?? 0) - (measured[row] ?? 0), options.continuous);
+  const after = lastOutside + 1;
+  const entered = entryTime(
+    time[lastOutside] ?? 0,
+    time[after] ?? 0,
+    errorAt(lastOutside),
+    errorAt(after),
+    options.tolerance,
   );
-  const t0 = time[lastOutside] ?? 0;
-  const t1 = time[lastOutside + 1] ?? 0;
-  const share = before > after ? (before - options.tolerance) / (before - after) : 1;
-  const entered = t0 + share * (t1 - t0);
   return end - entered >= DWELL - 1e-9 ? entered : null;
 }
 
