@@ -75,7 +75,7 @@ function advanceWithin(arm: ArmMotion, u: number, left: number, direction: numbe
   const { law, piece, course } = arm;
   const drag = direction > 0 ? law.againstForward : law.againstBack;
   findPiece(piece, law, u, arm.speed, drag + weightAt(arm, arm.position));
-  layCourse(arm, left, drag);
+  layCourse(arm, left);
   const low = direction > 0 ? Math.max(0, piece.low) : piece.low;
   const high = direction < 0 ? Math.min(0, piece.high) : piece.high;
 
@@ -105,11 +105,13 @@ function advanceWithin(arm: ArmMotion, u: number, left: number, direction: numbe
 const ROUNDS = 3;
 
 /** Lays the course of the next `left` seconds in the arm's piece. */
-function layCourse(arm: ArmMotion, left: number, drag: number): void {
+function layCourse(arm: ArmMotion, left: number): void {
   const { law, piece, course } = arm;
   const scale = law.topSpeed / law.lag;
-  const free = piece.force + (piece.slope * arm.speed) / law.topSpeed - drag;
-  const start = scale * (free - weightAt(arm, arm.position));
+  // What the motor's straight line gives at standstill, less the drag.
+  const weight = weightAt(arm, arm.position);
+  const free = piece.net + weight + (piece.slope * arm.speed) / law.topSpeed;
+  const start = scale * (free - weight);
   setCourse(course, arm.position, arm.speed, left, piece.slope / law.lag);
   course.a0 = start;
   course.a1 = 0;

@@ -46,6 +46,7 @@ export function meanLagShare(z: number, share: number = lagShare(z)): number {
  * @returns s; Infinity when `level` is the end value itself
  */
 export function timeToLevel(from: number, level: number, end: number, lag: number): number {
-  if (from === level) return 0;
-  return lag * Math.log1p((from - level) / (level - end));
+  const ratio = (from - level) / (level - end);
+  // log is three times as fast as log1p, and as good where 1 + ratio loses nothing that matters.
+  return lag * (ratio > 0.5 ? Math.log(1 + ratio) : Math.log1p(ratio));
 }

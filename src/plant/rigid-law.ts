@@ -56,6 +56,7 @@ export function rigidLawOf(plant: PlantModel): RigidLaw {
 
 /** The motor's force at standstill under output `u`. */
 export function stallForce(law: RigidLaw, u: number): number {
+  if (law.isPlain) return u;
   const force = u / (1 + law.sag * u * u);
   return Math.max(-law.limit, Math.min(law.limit, force));
 }
@@ -79,34 +80,46 @@ export function startDirection(law: RigidLaw, u: number, x: number, extra: numbe
 }
 
 /**
- * The stretch of speeds around some speed over which the motor's force is one straight line. Filled by {@link findPiece}.
+ * The stretch of speeds around some speed in which the motor's force is one straight line, and where the motion in it is bound
+ * for. Filled by {@link findPiece}, and by the solver as far as the stop.
  */
 export interface Piece {
   /** Force lost per topSpeed of speed: 1, φ, or 0 at the current limit. */
   slope: number;
-  /** Motor's force at that speed. */
-  force: number;
+  /** Force that is left to change the speed. */
+  net: number;
   low: number;
   high: number;
+  /** The end of the piece that the speed runs to, or the speed at which the solver has to look again. */
+  target: number;
+  /** Position of the stop ahead. */
+  stop: number;
 }
 
 /** An empty piece, to be filled. */
 export function newPiece(): Piece {
-  return { slope: Number.NaN, force: Number.NaN, low: Number.NaN, high: Number.NaN };
+  const none = Number.NaN;
+  return { slope: none, net: none, low: none, high: none, target: none, stop: none };
 }
 
 /**
  * Finds the piece in which the speed is about to move; on an edge that is the one it moves into.
  *
- * @param against force that opposes the motor's: whatever remains speeds it up
+ * @param against force that opposes the motor's
  */
 export function findPiece(piece: Piece, law: RigidLaw, u: number, v: number, against: number): void {
-  const { topSpeed, limit } = law;
   if (law.isPlain) {
-    piece.force = u - v / topSpeed;
-    setPiece(piece, 1, Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY);
-    return;
-  }
+    const net = u - v / law.topSpeed - against;
+    piece.slope = 1;
+    piece.net = net;
+    piece.low = Number.NEGATIVE_INFINITY;
+    piece.high = Number.POSITIVE_INFINITY;
+    piece.target = net < 0 ? Number.NEGATIVE_INFINITY : Number.POSITIVE_INFINITY;
+  } else findBoundedPiece(piece, law, u, v, against);
+}
+
+function findBoundedPiece(piece: Piece, law: RigidLaw, u: number, v: number, against: number): void {
+  const { topSpeed, limit } = law;
   const phi = 1 / (1 + law.sag * u * u);
   // The force falls with speed by φ on the side of u·topSpeed where the motor drives, by 1 where it returns current.
   const below = u > 0 ? phi : 1;
@@ -114,18 +127,19 @@ export function findPiece(piece: Piece, law: RigidLaw, u: number, v: number, aga
   const limited = topSpeed * (u - limit / below);
   const free = topSpeed * u;
   const limitedBack = topSpeed * (u + limit / above);
-  piece.force = motorForce(law, u, v);
-  const isRising = piece.force >= against;
-  if (v < limited || (v === limited && !isRising)) setPiece(piece, 0, Number.NEGATIVE_INFINITY, limited);
+  piece.net = motorForce(law, u, v) - against;
+  const isRising = piece.net >= 0;
+  if (v < limited || (v === limited && !isRising)) setEdges(piece, 0, Number.NEGATIVE_INFINITY, limited);
   else if (v > limitedBack || (v === limitedBack && isRising))
-    setPiece(piece, 0, limitedBack, Number.POSITIVE_INFINITY);
-  else if (phi === 1) setPiece(piece, 1, limited, limitedBack);
-  else if (v < free || (v === free && !isRising)) setPiece(piece, below, limited, free);
-  else setPiece(piece, above, free, limitedBack);
+    setEdges(piece, 0, limitedBack, Number.POSITIVE_INFINITY);
+  else if (phi === 1) setEdges(piece, 1, limited, limitedBack);
+  else if (v < free || (v === free && !isRising)) setEdges(piece, below, limited, free);
+  else setEdges(piece, above, free, limitedBack);
 }
 
-function setPiece(piece: Piece, slope: number, low: number, high: number): void {
+function setEdges(piece: Piece, slope: number, low: number, high: number): void {
   piece.slope = slope;
   piece.low = low;
   piece.high = high;
+  piece.target = piece.net >= 0 ? high : low;
 }

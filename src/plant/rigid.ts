@@ -2,18 +2,25 @@ import { lagShare, meanLagShare, timeToLevel } from './lag.ts';
 import { findPiece, newPiece, type Piece, type RigidLaw, startDirection } from './rigid-law.ts';
 import { findRoot } from './root.ts';
 
-/** A rigid mechanism in motion: changed in place by {@link advanceRigid} and {@link strideRigid}. */
+/** A rigid mechanism in motion: changed in place by {@link advanceRigid}. */
 export interface RigidMotion {
   readonly law: RigidLaw;
   position: number;
   speed: number;
-  /** Where the solver keeps the piece that it is in. */
+  /** What is left of the duration that it is being moved for, s. */
+  left: number;
+  /** The piece of the law that it is in. */
   readonly piece: Piece;
 }
 
 /** Puts a rigid mechanism at its start. */
 export function startRigid(law: RigidLaw, position: number, speed: number): RigidMotion {
-  return { law, position, speed, piece: newPiece() };
+  // NaN, not 0: an engine that first sees a whole number in a field plans for whole numbers there.
+  const motion = { law, position: Number.NaN, speed: Number.NaN, left: Number.NaN, piece: newPiece() };
+  motion.position = position;
+  motion.speed = speed;
+  motion.left = 0;
+  return motion;
 }
 
 // Four pieces, zero speed, a stop and a start from rest: no held output has more events than this.
@@ -28,76 +35,79 @@ const MOST_EVENTS = 16;
  * @param duration s, ≥ 0
  */
 export function advanceRigid(motion: RigidMotion, u: number, duration: number): void {
-  const { law } = motion;
-  let left = duration;
-  for (let events = 0; left > 0 && events < MOST_EVENTS; events++) {
-    const direction = motion.speed === 0 ? startDirection(law, u, motion.position, 0) : Math.sign(motion.speed);
+  const { law, piece } = motion;
+  motion.left = duration;
+  for (let events = 0; motion.left > 0 && events < MOST_EVENTS; events++) {
+    const { speed, position } = motion;
+    const direction = speed === 0 ? startDirection(law, u, position, 0) : speed > 0 ? 1 : -1;
     if (direction === 0) return;
-    const stop = direction > 0 ? law.max : law.min;
-    if (direction > 0 ? motion.position >= stop : motion.position <= stop) motion.speed = 0;
-    else left -= advancePiece(motion, u, left, direction, stop);
+    piece.stop = direction > 0 ? law.max : law.min;
+    if (direction > 0 ? position >= piece.stop : position <= piece.stop) {
+      motion.speed = 0;
+      continue;
+    }
+    findPiece(piece, law, u, speed, direction > 0 ? law.againstForward : law.againstBack);
+    if (speed < 0 ? piece.target > 0 : speed > 0 && piece.target < 0) piece.target = 0;
+    if (piece.slope > 0) relax(motion);
+    else glide(motion);
   }
 }
 
-/** Moves within one piece of the law, to its end at most; returns the time used, s. */
-function advancePiece(motion: RigidMotion, u: number, left: number, direction: number, stop: number): number {
-  const { law, speed, piece } = motion;
-  const against = direction > 0 ? law.againstForward : law.againstBack;
-  findPiece(piece, law, u, speed, against);
-  const net = piece.force - against;
-  let target = net >= 0 ? piece.high : piece.low;
-  if (speed < 0 && target > 0) target = 0;
-  if (speed > 0 && target < 0) target = 0;
-  return piece.slope === 0
-    ? glide(motion, (law.topSpeed * net) / law.lag, target, left, stop)
-    : relax(motion, (law.topSpeed * net) / piece.slope, law.lag / piece.slope, target, left, stop);
-}
-
-/** Motion with a lagging speed that has `toEnd` to go; ends at `target`, at `stop` or when `left` is used. */
-function relax(motion: RigidMotion, toEnd: number, lag: number, target: number, left: number, stop: number): number {
-  const { position, speed } = motion;
-  let time = left;
-  let share = lagShare(left / lag);
-  let next = speed + toEnd * share;
-  if (toEnd > 0 ? next >= target : next <= target) {
-    next = target;
-    time = Math.min(left, timeToLevel(speed, target, speed + toEnd, lag));
-    share = (target - speed) / toEnd;
+/** Moves on where the force falls with speed, so that speed lags towards an end value: to the target, the stop, or the time's end. */
+function relax(motion: RigidMotion): void {
+  const { position, speed, left, law, piece } = motion;
+  const { target, stop } = piece;
+  const lag = law.lag / piece.slope;
+  const toEnd = (law.topSpeed * piece.net) / piece.slope;
+  const end = speed + toEnd;
+  let time = (toEnd < 0 ? end < target : end > target)
+    ? timeToLevel(speed, target, end, lag)
+    : Number.POSITIVE_INFINITY;
+  let next = target;
+  let share = (target - speed) / toEnd;
+  if (time > left) {
+    time = left;
+    share = lagShare(left / lag);
+    next = speed + toEnd * share;
   }
   const reached = time === 0 ? position : position + time * (speed + toEnd * meanLagShare(time / lag, share));
   if (stop > position ? reached >= stop : reached <= stop) {
-    return strike(motion, stop, relaxingTime(stop - position, speed, toEnd, lag, time));
+    strike(motion, relaxingTime(stop - position, speed, toEnd, lag, time));
+    return;
   }
   motion.position = reached;
   motion.speed = next;
-  return time;
+  motion.left = left - time;
 }
 
-/** Motion under a constant acceleration; ends as {@link relax} does. */
-function glide(motion: RigidMotion, acceleration: number, target: number, left: number, stop: number): number {
-  const { position, speed } = motion;
+/** The same at the current limit, where the force is constant. */
+function glide(motion: RigidMotion): void {
+  const { position, speed, left, law, piece } = motion;
+  const { target, stop } = piece;
+  const acceleration = (law.topSpeed * piece.net) / law.lag;
   let time = left;
   let next = speed + acceleration * left;
-  if (acceleration > 0 ? next >= target : next <= target) {
+  if (acceleration < 0 ? next <= target : next >= target) {
     next = target;
     time = Math.min(left, (target - speed) / acceleration);
   }
   const reached = time === 0 ? position : position + time * (speed + 0.5 * acceleration * time);
   if (stop > position ? reached >= stop : reached <= stop) {
-    return strike(motion, stop, glidingTime(stop - position, speed, acceleration, time));
+    strike(motion, glidingTime(stop - position, speed, acceleration, time));
+    return;
   }
   motion.position = reached;
   motion.speed = next;
-  return time;
+  motion.left = left - time;
 }
 
-function strike(motion: RigidMotion, stop: number, time: number): number {
-  motion.position = stop;
+function strike(motion: RigidMotion, time: number): void {
+  motion.position = motion.piece.stop;
   motion.speed = 0;
-  return time;
+  motion.left -= time;
 }
 
-// Within one stretch the distance only grows, so a stop is reached at one time.
+// Within one piece the distance only grows, so a stop is reached at one time.
 
 function relaxingTime(distance: number, speed: number, toEnd: number, lag: number, within: number): number {
   return findRoot((t) => (t === 0 ? 0 : t * (speed + toEnd * meanLagShare(t / lag))) - distance, 0, within);

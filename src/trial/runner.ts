@@ -1,17 +1,19 @@
-import { type ControllerSettings, fullOutput, type Gains } from '../controller/settings.ts';
-import { createController } from '../controller/tick.ts';
+import { type ControllerSettings, fullOutput, type Gains, NO_GAINS } from '../controller/settings.ts';
+import { type Controller, createController, resetController } from '../controller/tick.ts';
 import type { Move } from '../mechanism/profile.ts';
 import { startMotion } from '../plant/motion.ts';
 import { countsPerUnit } from '../plant/quantise.ts';
 import type { PlantModel } from '../plant/response-model.ts';
 import type { OutputParts } from '../record/samples.ts';
 import { normalNumbers } from './chance.ts';
-import { runEven } from './even-trial.ts';
 import { planSetpoint, setpointAt, setpointSpeedAt } from './setpoint.ts';
 import type { TrialStand } from './stand.ts';
+import { runStepwise } from './stepwise-trial.ts';
+import { type SwiftPlant, swiftPlantOf } from './swift-plant.ts';
+import { newRun } from './swift-run.ts';
+import { isSwift, runSwift } from './swift-trial.ts';
 import { tickTimes } from './ticks.ts';
 import type { MoveShape, Reading } from './trial.ts';
-import { runUneven } from './uneven-trial.ts';
 
 /** What stays the same from trial to trial of a search. */
 export interface TrialSetup {
@@ -50,12 +52,39 @@ export interface TrialRunner {
 }
 
 /**
- * Prepares for many trials that differ in plant, gains, move and cap only. Nothing is allocated a tick. The trial is that of
- * {@link simulateTrial}, to the bit.
+ * Prepares for many trials that differ in plant, gains, move and cap only. Nothing is allocated a tick, and a plant that comes back
+ * is laid out once. The trial is that of {@link simulateTrial}.
  */
 export function createTrialRunner(setup: TrialSetup): TrialRunner {
   const stand = standOf(setup);
-  return { columns: stand, run: (plant, gains, move, outputCap) => runOn(stand, setup, plant, gains, move, outputCap) };
+  const swiftRun = newRun();
+  const known = new WeakMap<PlantModel, LaidOut>();
+  const run = (plant: PlantModel, gains: Gains, move: Move, outputCap: number): number => {
+    let laidOut = known.get(plant);
+    if (laidOut === undefined) {
+      laidOut = layOut(plant, setup);
+      known.set(plant, laidOut);
+    }
+    const { controller, swift } = laidOut;
+    fillSetpoint(stand, setup.shape, move);
+    resetController(controller, gains, outputCap);
+    const lost =
+      setup.lostBeyond === null ? Number.POSITIVE_INFINITY : setup.lostBeyond * Math.abs(move.to - move.from);
+    if (swift === null || setup.shape !== null || !isSwift(controller, stand)) {
+      return runStepwise(stand, controller, startMotion(plant, startOf(plant, move)), plant, lost);
+    }
+    swift.motion.position = swift.isSpeed > 0 ? 0 : move.from;
+    swift.motion.speed = swift.isSpeed > 0 ? move.from : 0;
+    return runSwift(stand, controller, swift, swiftRun, lost);
+  };
+  return { columns: stand, run };
+}
+
+/** A plant and the controller that runs it, ready for trial after trial. */
+interface LaidOut {
+  readonly controller: Controller;
+  /** Null when the plant or its reading needs the general loop. */
+  readonly swift: SwiftPlant | null;
 }
 
 function standOf(setup: TrialSetup): TrialStand {
@@ -78,29 +107,23 @@ function standOf(setup: TrialSetup): TrialStand {
   };
 }
 
-function runOn(
-  stand: TrialStand,
-  setup: TrialSetup,
-  plant: PlantModel,
-  gains: Gains,
-  move: Move,
-  outputCap: number,
-): number {
-  fillSetpoint(stand, setup.shape, move);
+function layOut(plant: PlantModel, setup: TrialSetup): LaidOut {
+  const { reading } = setup;
   const controller = createController({
     settings: setup.controller,
-    gains,
+    gains: NO_GAINS,
     quantity: plant.quantity,
     continuous: setup.continuous,
     holdShape: plant.gravity,
-    outputCap,
+    outputCap: 1,
   });
-  const motion = startMotion(plant, startOf(plant, move));
-  const lost = setup.lostBeyond === null ? Number.POSITIVE_INFINITY : setup.lostBeyond * Math.abs(move.to - move.from);
-  const isEven = setup.reading.jitter <= 0 && setup.reading.period <= 0;
-  return isEven && motion.solver === 'exact'
-    ? runEven(stand, controller, motion.state, plant, lost)
-    : runUneven(stand, controller, motion, plant, lost);
+  const motion = startMotion(plant, { position: 0, speed: 0 });
+  if (motion.solver !== 'exact' || reading.jitter > 0 || reading.period > 0) return { controller, swift: null };
+  const delay = plant.response.delay + reading.delay;
+  const isSpeed = plant.quantity === 'speed';
+  const { period } = setup.controller;
+  const perUnit = 1 / fullOutput(setup.controller);
+  return { controller, swift: swiftPlantOf(motion.state, isSpeed, delay, period, perUnit) };
 }
 
 /** At rest where the move starts; a speed loop runs there, an arm under one from level. */
@@ -112,7 +135,7 @@ function startOf(plant: PlantModel, move: Move): { position: number; speed: numb
 function fillSetpoint(stand: TrialStand, shape: MoveShape | null, move: Move): void {
   const { time, setpoint, setpointSpeed } = stand;
   if (shape === null) {
-    setpoint.fill(move.to);
+    if (setpoint[0] !== move.to) setpoint.fill(move.to);
     return;
   }
   const course = planSetpoint(move, shape);

@@ -10,7 +10,7 @@ import type { TrialStand } from './stand.ts';
  *
  * @returns rows written
  */
-export function runUneven(
+export function runStepwise(
   stand: TrialStand,
   controller: Controller,
   motion: Motion,
