@@ -1,5 +1,5 @@
-import stringWidth from 'string-width';
 import type { Style } from '../chart/spec.ts';
+import { textWidth } from '../record/text-width.ts';
 
 /** Breaks a text at blanks into lines of at most `width` columns; a word that is longer stands alone. Indents are kept. */
 export function wrapped(text: string, width: number): readonly string[] {
@@ -8,7 +8,7 @@ export function wrapped(text: string, width: number): readonly string[] {
     const lines: string[] = [];
     let line: string | null = null;
     for (const word of paragraph.slice(indent.length).split(' ')) {
-      if (line !== null && stringWidth(line) + 1 + stringWidth(word) > width) {
+      if (line !== null && textWidth(line) + 1 + textWidth(word) > width) {
         lines.push(line);
         line = null;
       }
@@ -28,7 +28,7 @@ export function hanging(label: string, text: string, width: number, indent = 9):
 export function heading(text: string, width: number, style: Style): string {
   const dash = style.unicode ? '─' : '-';
   const left = `${dash.repeat(2)} ${text} `;
-  return left + dash.repeat(Math.max(0, width - stringWidth(left)));
+  return left + dash.repeat(Math.max(0, width - textWidth(left)));
 }
 
 /** Rows in columns: the first flush left, the others as `align` says, two blanks between. */
@@ -37,11 +37,11 @@ export function columned(
   align: readonly ('left' | 'right')[],
 ): readonly string[] {
   const count = Math.max(0, ...rows.map((row) => row.length));
-  const widths = Array.from({ length: count }, (_, k) => Math.max(0, ...rows.map((row) => stringWidth(row[k] ?? ''))));
+  const widths = Array.from({ length: count }, (_, k) => Math.max(0, ...rows.map((row) => textWidth(row[k] ?? ''))));
   return rows.map((row) =>
     row
       .map((cell, k) => {
-        const blank = ' '.repeat(Math.max(0, (widths[k] ?? 0) - stringWidth(cell)));
+        const blank = ' '.repeat(Math.max(0, (widths[k] ?? 0) - textWidth(cell)));
         return align[k] === 'right' ? blank + cell : cell + blank;
       })
       .join('  ')
