@@ -1,48 +1,62 @@
-/** What a line does within one column of the drawing. */
-export interface Column {
-  /** Value drawn; NaN = nothing there. */
-  readonly value: number;
+/** A line resampled to the columns of a drawing, one entry a column. NaN = nothing there. */
+export interface Columns {
+  /** What is drawn: the extreme of the column that lies farthest from its middle, so that a spike of one sample is never lost. */
+  readonly value: readonly number[];
+  /** Least and most within the column. */
+  readonly low: readonly number[];
+  readonly high: readonly number[];
 }
 
-/**
- * A line resampled to `columns` values over a span of time, keeping its extremes: each column shows the value in it that lies
- * farthest from where the column began, so that a spike of one sample is never lost. Between samples it is interpolated.
- */
+/** A line resampled to `columns` columns over a span of time, keeping its extremes. Between samples it is interpolated. */
 export function resample(
   time: Float64Array,
   value: Float64Array,
   span: readonly [number, number],
   columns: number,
-): number[] {
+): Columns {
   const [start, end] = span;
   const width = (end - start) / Math.max(1, columns - 1);
   const drawn: number[] = [];
+  const lowest: number[] = [];
+  const highest: number[] = [];
   let row = 0;
   for (let column = 0; column < columns; column++) {
     const centre = start + column * width;
-    const left = centre - width / 2;
-    const right = centre + width / 2;
-    while (row < time.length && (time[row] ?? 0) < left) row++;
-    const here = interpolate(time, value, row, centre);
+    while (row < time.length && (time[row] ?? 0) < centre - width / 2) row++;
+    const here = valueAt(time, value, centre, row);
     let picked = here;
-    for (let at = row; at < time.length && (time[at] ?? 0) < right; at++) {
+    let low = here;
+    let high = here;
+    for (let at = row; at < time.length && (time[at] ?? 0) < centre + width / 2; at++) {
       const candidate = value[at] ?? Number.NaN;
+      if (Number.isNaN(candidate)) continue;
       if (Number.isNaN(picked) || Math.abs(candidate - here) > Math.abs(picked - here)) picked = candidate;
+      if (!(low <= candidate)) low = candidate;
+      if (!(high >= candidate)) high = candidate;
     }
     drawn.push(picked);
+    lowest.push(low);
+    highest.push(high);
   }
-  return drawn;
+  return { value: drawn, low: lowest, high: highest };
 }
 
-function interpolate(time: Float64Array, value: Float64Array, row: number, at: number): number {
-  let next = row;
+/**
+ * A line's value at a time, interpolated between its samples.
+ *
+ * @param from a row before which the time is not looked for
+ * @returns NaN before the first sample, after the last and beside a gap
+ */
+export function valueAt(time: Float64Array, value: Float64Array, at: number, from = 0): number {
+  const slack = 1e-9 * Math.max(1, Math.abs(at));
+  let next = from;
   while (next < time.length && (time[next] ?? 0) < at) next++;
-  if (next >= time.length || time.length === 0)
-    return (time.at(-1) ?? Number.NaN) >= at - 1e-9 ? (value.at(-1) ?? Number.NaN) : Number.NaN;
-  if (next === 0) return (time[0] ?? 0) - at <= 1e-9 ? (value[0] ?? Number.NaN) : Number.NaN;
+  if (next >= time.length) return (time.at(-1) ?? Number.NaN) >= at - slack ? (value.at(-1) ?? Number.NaN) : Number.NaN;
+  if (next === 0) return (time[0] ?? 0) - at <= slack ? (value[0] ?? Number.NaN) : Number.NaN;
   const t0 = time[next - 1] ?? 0;
   const t1 = time[next] ?? t0;
-  const share = t1 > t0 ? (at - t0) / (t1 - t0) : 0;
-  const a = value[next - 1] ?? Number.NaN;
-  return a + share * ((value[next] ?? Number.NaN) - a);
+  const after = value[next] ?? Number.NaN;
+  if (t1 === at || t1 <= t0) return after;
+  const before = value[next - 1] ?? Number.NaN;
+  return before + ((at - t0) / (t1 - t0)) * (after - before);
 }

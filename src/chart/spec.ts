@@ -3,6 +3,7 @@ export interface Line {
   readonly name: string;
   readonly time: Float64Array;
   readonly value: Float64Array;
+  /** Two `band` lines in a row, low then high, shade what lies between them. */
   readonly role: 'setpoint' | 'measured' | 'promise' | 'band' | 'tolerance' | 'output' | 'p' | 'i' | 'd' | 'other';
 }
 
@@ -18,6 +19,8 @@ export interface ChartSpec {
   readonly range: readonly [low: number, high: number] | null;
   /** Time shown, s; null = all. */
   readonly span: readonly [start: number, end: number] | null;
+  /** Time at which every line is marked and read out, s; absent or null = no cursor. */
+  readonly cursor?: number | null | undefined;
 }
 
 /** How the terminal can draw. */

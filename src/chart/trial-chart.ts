@@ -94,7 +94,8 @@ export function outputChart(
     lines,
     width: options.width,
     height: options.height,
-    range: [-1.1 * size, 1.1 * size],
+    // Parts may be many times what the output is limited to: they show as beyond it, on the edge.
+    range: [-1.4 * size, 1.4 * size],
     span: options.span,
   };
 }
