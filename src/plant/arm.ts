@@ -18,8 +18,11 @@ export interface ArmMotion {
   readonly course: Course;
 }
 
-// At top speed an arm turns this far in a sub-step, rad; its error against a general ODE solver is in test/plant/arm.test.ts.
+// At top speed an arm turns this far in a sub-step, rad. A sub-step spans half the lag at most, down to a tenth of that turn: a lag
+// shorter still bends the path too little to matter. Its error against a general ODE solver: test/plant/arm.test.ts.
 const TURN = 0.02;
+const LEAST_TURN = 0.002;
+const SHARE_OF_LAG = 0.5;
 
 /** Puts an arm at its start. */
 export function startArm(
@@ -27,12 +30,14 @@ export function startArm(
   gravity: Extract<Gravity, { kind: 'cosine' }>,
   start: { readonly position: number; readonly speed: number },
 ): ArmMotion {
+  const { topSpeed, lag } = plant.response;
+  const turnRate = topSpeed * gravity.radiansPerUnit;
   return {
     law: rigidLawOf(plant),
     weight: plant.response.hold,
     level: gravity.level,
     radiansPerUnit: gravity.radiansPerUnit,
-    subStep: TURN / (plant.response.topSpeed * gravity.radiansPerUnit),
+    subStep: Math.min(TURN / turnRate, Math.max(LEAST_TURN / turnRate, SHARE_OF_LAG * lag)),
     position: start.position,
     speed: start.speed,
     piece: newPiece(),
