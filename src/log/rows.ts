@@ -55,8 +55,13 @@ async function separatedRows(
   });
   for await (const piece of pieces) {
     if (failure !== null) break;
-    if (!parser.write(piece))
-      await new Promise((resolve) => (failure === null ? parser.once('drain', resolve) : resolve(null)));
+    // A parser that fails in the middle of a piece closes and never drains.
+    if (!parser.write(piece) && !parser.destroyed) {
+      await new Promise((resolve) => {
+        parser.once('drain', resolve);
+        parser.once('close', resolve);
+      });
+    }
   }
   parser.end();
   await done;
