@@ -200,5 +200,8 @@ function searchGround(situation: Situation, learnt: LearntModel): SearchGround {
 /** The best estimate and the posterior draws as plants. */
 export function drawsOf(situation: Situation, learnt: LearntModel | null): readonly Draw[] {
   const responses = learnt === null ? [situation.prior.response] : [learnt.response, ...learnt.draws];
-  return responses.map((response) => ({ response, plant: plantWith(situation.profile, response) }));
+  return responses.map((response) => ({
+    response,
+    plant: { ...plantWith(situation.profile, response), coupling: null },
+  }));
 }

@@ -33,7 +33,10 @@ export function finish(
   const { profile, learnt, prior } = situation;
   const promised = learnt !== null || machineKnown(prior);
   const responses = learnt?.draws ?? drawPrior(prior, 64, situation.history.seed);
-  const draws: readonly Draw[] = responses.map((response) => ({ response, plant: plantWith(profile, response) }));
+  const draws: readonly Draw[] = responses.map((response) => ({
+    response,
+    plant: { ...plantWith(profile, response), coupling: null },
+  }));
   const rehearsal = rehearsalOf(profile, draft.duration, profile.target.tolerance, situation.history.seed);
   const safe = promised ? makeSafe(profile, draws, rehearsal, draft) : { gains: draft.gains, bounded: null };
   if (safe === null) {

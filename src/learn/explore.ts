@@ -2,10 +2,10 @@ import { EigenvalueDecomposition } from 'ml-matrix';
 import { covarianceOf, type Residuals, type Solution } from './least-squares.ts';
 
 /** Steps tried along each axis of the uncertainty, in its own deviations, widest first. */
-const STRIDES = [8, 3, 1, 0.4];
+const STRIDES = [30, 10, 3, 1];
 
-/** Longest step along any axis, in the coordinates' own units (logarithms, mostly). */
-const LONGEST = 0.6;
+/** Longest step along any axis, in the coordinates' own units. */
+const LONGEST = 1.5;
 
 /**
  * Looks around a least-squares solution along the axes of its uncertainty and moves wherever the sum of squares is lower. Stick and
@@ -39,7 +39,7 @@ function axesOf(solution: Solution): {
 } {
   const count = solution.parameters.length;
   const variance = Math.max(solution.sumOfSquares / Math.max(1, solution.residuals.length - count), 1e-12);
-  const covariance = covarianceOf(solution.jacobian, variance);
+  const covariance = covarianceOf(solution.triangle, variance);
   const { eigenvectorMatrix, realEigenvalues } = new EigenvalueDecomposition(covariance, { assumeSymmetric: true });
   return {
     vectors: realEigenvalues.map((_, axis) => eigenvectorMatrix.getColumn(axis)),

@@ -1,12 +1,14 @@
 import type { Matrix } from 'ml-matrix';
 import type { Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
+import { normalNumbers } from '../trial/chance.ts';
 import type { Drive } from './evidence.ts';
 import { exploreAround } from './explore.ts';
 import type { Prior } from './learnt.ts';
 import { covarianceOf, leastSquares } from './least-squares.ts';
 import { type Answers, answersTo, fitPercent } from './output-error.ts';
-import { decode, encode, PARAMETERS, priorDeviations } from './parameters.ts';
+import { decode, encode, type FitParameter, PARAMETERS, priorDeviations } from './parameters.ts';
+import { regressedModels } from './regression.ts';
 
 /** A fitted model in the coordinates of the fit. */
 export interface Fitted {
@@ -40,22 +42,37 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
   const floor = noiseFloor(drives, profile);
   const problem = (sigma: number, weight: number) =>
     residualsFor({ drives, answers, centre, deviations, free, delayScale, sigma, weight });
-  const first = bestStart(problem(20 * floor, 1), centre, free, deviations, delayScale, profile);
   // First as if every residual counted: what the prior would pull aside must not pass for a poor model.
   const open = problem(5 * floor, 1);
-  const near = leastSquares(open, first, options(14, free, deviations));
-  const rough = leastSquares(open, exploreAround(open, near), options(10, free, deviations));
-  const roughResponse = decodeAt(rough.parameters, centre, free, delayScale);
+  const starts = bestStarts(
+    problem(20 * floor, 1),
+    regressedModels(drives, profile, rowShift, prior.response),
+    centre,
+    free,
+    deviations,
+    delayScale,
+    profile,
+  );
+  let rough = starts
+    .map((start) => leastSquares(open, start, options(5, free, 0.03)))
+    .reduce((best, next) => (next.sumOfSquares < best.sumOfSquares ? next : best));
+  for (let round = 0; round < ROUNDS; round++) {
+    const next = leastSquares(open, exploreAround(open, rough), options(6, free, round % 2 === 0 ? 0.01 : 0.05));
+    const gained = 1 - next.sumOfSquares / rough.sumOfSquares;
+    if (gained > 0) rough = next;
+    if (gained < 0.01) break;
+  }
+  const roughResponse = decodeAt(rough.parameters, centre, deviations, free, delayScale);
   const sigma = Math.max(floor, spreadOf(drives, answers, roughResponse));
   const weight = independence(drives, answers.of(roughResponse));
-  const solved = leastSquares(problem(sigma, weight), rough.parameters, options(18, free, deviations));
-  const response = decodeAt(solved.parameters, centre, free, delayScale);
+  const solved = leastSquares(problem(sigma, weight), rough.parameters, options(10, free));
+  const response = decodeAt(solved.parameters, centre, deviations, free, delayScale);
   const residual = Math.max(floor, spreadOf(drives, answers, response));
   const scale = (residual / sigma) ** 2;
   return {
     response,
-    at: fullCoordinates(solved.parameters, centre, free),
-    covariance: covarianceOf(solved.jacobian, Math.max(0.5, scale)),
+    at: fullCoordinates(solved.parameters, centre, deviations, free),
+    covariance: inModelCoordinates(covarianceOf(solved.triangle, Math.max(0.5, scale)), free, deviations, delayScale),
     free,
     deviations,
     delayScale,
@@ -66,12 +83,43 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
   };
 }
 
-const options = (maxIterations: number, free: readonly number[], deviations: readonly number[]) => ({
+/** Difference in prior deviations: wide enough to look over the small kinks that stick and slip leave in the cost. */
+const options = (maxIterations: number, free: readonly number[], difference = 0.01) => ({
   maxIterations,
   tolerance: 1e-5,
-  difference: 2e-3,
-  typical: free.map((j) => Math.min(1, deviations[j] ?? 1)),
+  difference,
+  typical: free.map(() => 1),
 });
+
+/**
+ * What no fit is trusted beyond, however little the sensor leaves: machines are not their model to better than this, and a cost
+ * with kinks is not solved to better. In ln, output fractions for hold, shares of the prior's deviation for the delay.
+ */
+const LEAST_DEVIATIONS: Readonly<Record<FitParameter, number>> = {
+  topSpeed: 0.008,
+  lag: 0.015,
+  drag: 0.04,
+  excess: 0.15,
+  hold: 0.002,
+  delay: 0.06,
+  oneSided: 0.04,
+};
+
+function inModelCoordinates(
+  covariance: Matrix,
+  free: readonly number[],
+  deviations: readonly number[],
+  delayScale: number,
+): Matrix {
+  const scaled = covariance.clone();
+  free.forEach((j, k) => {
+    scaled.mulRow(k, deviations[j] ?? 1);
+    scaled.mulColumn(k, deviations[j] ?? 1);
+    const least = (LEAST_DEVIATIONS[PARAMETERS[j] ?? 'lag'] ?? 0) * (PARAMETERS[j] === 'delay' ? delayScale : 1);
+    scaled.set(k, k, scaled.get(k, k) + least ** 2);
+  });
+  return scaled;
+}
 
 /** Hold is free where the mechanism has weight; the two directions' drag where the trials went both ways. */
 function freeParameters(drives: readonly Drive[], deviations: readonly number[]): readonly number[] {
@@ -107,7 +155,7 @@ function residualsFor(problem: Problem): (parameters: Float64Array) => Float64Ar
   const residuals = new Float64Array(rows + free.length);
   const factor = Math.sqrt(problem.weight) / sigma;
   return (parameters) => {
-    const answered = answers.of(decodeAt(parameters, centre, free, delayScale));
+    const answered = answers.of(decodeAt(parameters, centre, deviations, free, delayScale));
     let at = 0;
     drives.forEach((drive, index) => {
       const answer = answered[index];
@@ -115,8 +163,8 @@ function residualsFor(problem: Problem): (parameters: Float64Array) => Float64Ar
         residuals[at++] = robust(((drive.measured[row] ?? 0) - (answer?.[row] ?? 0)) / sigma) * factor * sigma;
       }
     });
-    free.forEach((j, k) => {
-      residuals[at++] = ((parameters[k] ?? 0) - (centre[j] ?? 0)) / (deviations[j] ?? 1);
+    free.forEach((_, k) => {
+      residuals[at++] = parameters[k] ?? 0;
     });
     return residuals;
   };
@@ -129,47 +177,65 @@ function robust(residual: number): number {
   return Math.sign(residual) * bend * Math.sqrt(2 * (Math.sqrt(1 + ratio * ratio) - 1));
 }
 
-/** The best of a few dead times and speeds to start from: the cost has valleys that a step cannot leave. */
-function bestStart(
+/** Rounds of looking around and stepping down. */
+const ROUNDS = 4;
+
+/** Candidates drawn from the prior to start from, and how many of the best are followed. */
+const CANDIDATES = 60;
+const FOLLOWED = 2;
+
+/**
+ * The best few of many places to start from, drawn from the prior: the cost has valleys that a step cannot leave. The same draws
+ * every time.
+ */
+function bestStarts(
   residualsOf: (parameters: Float64Array) => Float64Array,
+  regressed: readonly ResponseModel[],
   centre: Float64Array,
   free: readonly number[],
   deviations: readonly number[],
   delayScale: number,
   profile: Profile,
-): Float64Array {
-  const base = Float64Array.from(free, (j) => centre[j] ?? 0);
-  const wide = (deviations[0] ?? 0) > 0.8;
-  const delayAt = free.indexOf(PARAMETERS.indexOf('delay'));
-  const speedAt = free.indexOf(PARAMETERS.indexOf('topSpeed'));
-  const lagAt = free.indexOf(PARAMETERS.indexOf('lag'));
-  let best = base;
-  let least = Number.POSITIVE_INFINITY;
-  for (const delay of [0.04, 0.6, 2, 6]) {
-    for (const speed of wide ? [-1.4, -0.7, 0, 0.7, 1.4] : [-0.3, 0, 0.3]) {
-      for (const lag of wide ? [-1, 0, 1] : [-0.3, 0.3]) {
-        const start = base.slice();
-        if (delayAt >= 0)
-          start[delayAt] =
-            encode({ ...decode(centre, delayScale), delay: delay * profile.controller.period }, delayScale)[5] ?? 0;
-        if (speedAt >= 0) start[speedAt] = (start[speedAt] ?? 0) + speed;
-        if (lagAt >= 0) start[lagAt] = (start[lagAt] ?? 0) + lag;
-        let sum = 0;
-        for (const value of residualsOf(start)) sum += value * value;
-        if (sum < least) {
-          least = sum;
-          best = start;
-        }
+): readonly Float64Array[] {
+  const chance = normalNumbers(20, CANDIDATES * free.length);
+  const delays = [0.04, 0.3, 1, 2.5, 6].map(
+    (ticks) => encode({ ...decode(centre, delayScale), delay: ticks * profile.controller.period }, delayScale)[5] ?? 0,
+  );
+  const drawn = Array.from({ length: CANDIDATES }, (_, candidate) =>
+    Float64Array.from(free, (j, k) => {
+      if (PARAMETERS[j] === 'delay') {
+        return ((delays[candidate % delays.length] ?? 0) - (centre[j] ?? 0)) / (deviations[j] ?? 1);
       }
-    }
-  }
-  return best;
+      return (
+        (centre[j] ?? 0) + (deviations[j] ?? 0) * (candidate === 0 ? 0 : (chance[candidate * free.length + k] ?? 0))
+      );
+    }),
+  );
+  const computed = regressed.map((response) => {
+    const at = encode(response, delayScale);
+    return Float64Array.from(free, (j) => ((at[j] ?? 0) - (centre[j] ?? 0)) / (deviations[j] ?? 1));
+  });
+  const tried = [...computed, ...drawn].map((start) => {
+    let sum = 0;
+    for (const value of residualsOf(start)) sum += value * value;
+    return { start, sum: Number.isNaN(sum) ? Number.POSITIVE_INFINITY : sum };
+  });
+  return tried
+    .sort((a, b) => a.sum - b.sum)
+    .slice(0, FOLLOWED)
+    .map(({ start }) => start);
 }
 
-function fullCoordinates(parameters: Float64Array, centre: Float64Array, free: readonly number[]): Float64Array {
+/** Coordinates of the model from those of the fit, which count in prior deviations from the prior's centre. */
+function fullCoordinates(
+  parameters: Float64Array,
+  centre: Float64Array,
+  deviations: readonly number[],
+  free: readonly number[],
+): Float64Array {
   const at = centre.slice();
   free.forEach((j, k) => {
-    at[j] = parameters[k] ?? 0;
+    at[j] = (centre[j] ?? 0) + (deviations[j] ?? 0) * (parameters[k] ?? 0);
   });
   return at;
 }
@@ -177,10 +243,11 @@ function fullCoordinates(parameters: Float64Array, centre: Float64Array, free: r
 function decodeAt(
   parameters: Float64Array,
   centre: Float64Array,
+  deviations: readonly number[],
   free: readonly number[],
   delayScale: number,
 ): ResponseModel {
-  return decode(fullCoordinates(parameters, centre, free), delayScale);
+  return decode(fullCoordinates(parameters, centre, deviations, free), delayScale);
 }
 
 /** The least that a perfect model would leave: the sensor's step and noise, or a thousandth of the travel. */

@@ -1,4 +1,5 @@
 import { Matrix, QrDecomposition, SingularValueDecomposition } from 'ml-matrix';
+import { reduceColumns, type Triangle } from './householder.ts';
 
 /** Residuals of a problem at given parameters; always the same number of them. */
 export type Residuals = (parameters: Float64Array) => Float64Array;
@@ -16,8 +17,8 @@ export interface LeastSquaresOptions {
 export interface Solution {
   readonly parameters: Float64Array;
   readonly residuals: Float64Array;
-  /** Rows = residuals, columns = parameters. */
-  readonly jacobian: Matrix;
+  /** The Jacobian's triangular factor: as much of it as covariances need. */
+  readonly triangle: Triangle;
   readonly sumOfSquares: number;
   readonly iterations: number;
   readonly converged: boolean;
@@ -42,12 +43,12 @@ export function leastSquares(residualsOf: Residuals, start: Float64Array, option
   let growth = 2;
   let converged = false;
   let iterations = 0;
-  let jacobian = jacobianOf(residualsOf, parameters, residuals.length, options);
+  let reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals.length, options), residuals);
   for (; iterations < options.maxIterations && !converged; iterations++) {
-    for (let j = 0; j < count; j++) scale[j] = Math.max(scale[j] ?? 0, columnNorm(jacobian, j), 1e-300);
+    for (let j = 0; j < count; j++) scale[j] = Math.max(scale[j] ?? 0, columnNorm(reduced.triangle, j), 1e-300);
     let accepted = false;
     for (let attempt = 0; attempt < 25 && !accepted; attempt++) {
-      const step = dampedStep(jacobian, residuals, scale, damping);
+      const step = dampedStep(reduced.triangle, reduced.right, scale, damping);
       const next = parameters.map((value, j) => value + (step[j] ?? 0));
       const nextResiduals = residualsOf(next);
       const nextSum = sumOfSquares(nextResiduals);
@@ -55,7 +56,7 @@ export function leastSquares(residualsOf: Residuals, start: Float64Array, option
         (value, j) => Math.abs(step[j] ?? 0) <= options.tolerance * (Math.abs(value) + (options.typical[j] ?? 1)),
       );
       if (nextSum <= sum) {
-        const promised = promisedGain(jacobian, residuals, step);
+        const promised = promisedGain(reduced.triangle, reduced.right, step);
         const ratio = promised > 0 ? (sum - nextSum) / promised : 1;
         damping *= Math.max(1 / 5, 1 - (2 * ratio - 1) ** 3);
         growth = 2;
@@ -74,20 +75,24 @@ export function leastSquares(residualsOf: Residuals, start: Float64Array, option
       }
     }
     if (!accepted) break;
-    jacobian = jacobianOf(residualsOf, parameters, residuals.length, options);
+    reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals.length, options), residuals);
   }
-  return { parameters, residuals, jacobian, sumOfSquares: sum, iterations, converged };
+  return { parameters, residuals, triangle: reduced.triangle, sumOfSquares: sum, iterations, converged };
 }
 
 /**
- * Covariance of the parameters: variance · (JᵀJ)⁻¹ from the singular values of the column-scaled Jacobian. Scaling first
- * keeps the digits that a pseudo-inverse of JᵀJ loses on badly scaled problems.
+ * Covariance of the parameters: variance · (RᵀR)⁻¹ = variance · (JᵀJ)⁻¹ from the singular values of the column-scaled factor. Scaling
+ * first keeps the digits that a pseudo-inverse of JᵀJ loses on badly scaled problems.
  */
-export function covarianceOf(jacobian: Matrix, variance: number): Matrix {
-  const count = jacobian.columns;
-  const norms = Array.from({ length: count }, (_, j) => columnNorm(jacobian, j) || 1);
-  const scaled = jacobian.clone();
-  for (let j = 0; j < count; j++) scaled.mulColumn(j, 1 / (norms[j] ?? 1));
+export function covarianceOf(triangle: Triangle, variance: number): Matrix {
+  const count = triangle.length;
+  const norms = Array.from({ length: count }, (_, j) => columnNorm(triangle, j) || 1);
+  const scaled = Matrix.zeros(count, count);
+  triangle.forEach((column, j) => {
+    column.forEach((value, i) => {
+      scaled.set(i, j, value / (norms[j] ?? 1));
+    });
+  });
   const { rightSingularVectors: v, diagonal } = new SingularValueDecomposition(scaled, { autoTranspose: true });
   const result = Matrix.zeros(count, count);
   for (let i = 0; i < count; i++) {
@@ -106,49 +111,54 @@ function sumOfSquares(values: Float64Array): number {
   return Number.isNaN(sum) ? Number.POSITIVE_INFINITY : sum;
 }
 
-function columnNorm(matrix: Matrix, column: number): number {
+function columnNorm(triangle: Triangle, column: number): number {
   let sum = 0;
-  for (let row = 0; row < matrix.rows; row++) sum += matrix.get(row, column) ** 2;
+  for (const value of triangle[column] ?? []) sum += value * value;
   return Math.sqrt(sum);
 }
 
-function jacobianOf(residualsOf: Residuals, at: Float64Array, rows: number, options: LeastSquaresOptions): Matrix {
-  const jacobian = Matrix.zeros(rows, at.length);
+/** Central differences, a column a parameter. */
+function jacobianOf(
+  residualsOf: Residuals,
+  at: Float64Array,
+  rows: number,
+  options: LeastSquaresOptions,
+): readonly Float64Array[] {
   const point = Float64Array.from(at);
-  for (let j = 0; j < at.length; j++) {
-    const value = at[j] ?? 0;
+  return Array.from(at, (value, j) => {
     const h = options.difference * Math.max(Math.abs(value), options.typical[j] ?? 1);
     point[j] = value + h;
-    const above = residualsOf(point).slice();
+    const column = residualsOf(point).slice();
     point[j] = value - h;
     const below = residualsOf(point);
     point[j] = value;
-    for (let row = 0; row < rows; row++) jacobian.set(row, j, ((above[row] ?? 0) - (below[row] ?? 0)) / (2 * h));
-  }
-  return jacobian;
+    for (let row = 0; row < rows; row++) column[row] = ((column[row] ?? 0) - (below[row] ?? 0)) / (2 * h);
+    return column;
+  });
 }
 
-function dampedStep(jacobian: Matrix, residuals: Float64Array, scale: Float64Array, damping: number): Float64Array {
-  const rows = jacobian.rows;
-  const count = jacobian.columns;
-  const stacked = Matrix.zeros(rows + count, count);
-  const right = Matrix.zeros(rows + count, 1);
-  for (let row = 0; row < rows; row++) {
-    for (let j = 0; j < count; j++) stacked.set(row, j, jacobian.get(row, j) / (scale[j] ?? 1));
-    right.set(row, 0, -(residuals[row] ?? 0));
-  }
+/** Solves the damped problem on the small factor: √λ·D under R. */
+function dampedStep(triangle: Triangle, right: Float64Array, scale: Float64Array, damping: number): Float64Array {
+  const count = triangle.length;
+  const stacked = Matrix.zeros(2 * count, count);
+  const side = Matrix.zeros(2 * count, 1);
   const root = Math.sqrt(damping);
-  for (let j = 0; j < count; j++) stacked.set(rows + j, j, root);
-  const solution = new QrDecomposition(stacked).solve(right);
+  for (let j = 0; j < count; j++) {
+    for (let i = 0; i <= j; i++) stacked.set(i, j, (triangle[j]?.[i] ?? 0) / (scale[j] ?? 1));
+    stacked.set(count + j, j, root);
+    side.set(j, 0, -(right[j] ?? 0));
+  }
+  const solution = new QrDecomposition(stacked).solve(side);
   return Float64Array.from({ length: count }, (_, j) => solution.get(j, 0) / (scale[j] ?? 1));
 }
 
-function promisedGain(jacobian: Matrix, residuals: Float64Array, step: Float64Array): number {
+/** How much a step should lower the sum of squares if the problem were linear. */
+function promisedGain(triangle: Triangle, right: Float64Array, step: Float64Array): number {
   let gain = 0;
-  for (let row = 0; row < jacobian.rows; row++) {
+  for (let i = 0; i < step.length; i++) {
     let change = 0;
-    for (let j = 0; j < step.length; j++) change += jacobian.get(row, j) * (step[j] ?? 0);
-    const before = residuals[row] ?? 0;
+    for (let j = i; j < step.length; j++) change += (triangle[j]?.[i] ?? 0) * (step[j] ?? 0);
+    const before = right[i] ?? 0;
     gain += before * before - (before + change) ** 2;
   }
   return gain;

@@ -47,7 +47,7 @@ export function predict(request: PredictRequest): Prediction {
   });
   const rows = runner.columns.time.length;
   const courses = draws.map((response) => {
-    runner.run(plantWith(profile, response), request.gains, move, request.outputCap);
+    runner.run({ ...plantWith(profile, response), coupling: null }, request.gains, move, request.outputCap);
     return runner.columns.measured.slice(0, rows);
   });
   const noise = 1.645 * Math.hypot(request.residual, profile.sensor?.noise ?? 0) + (profile.sensor?.resolution ?? 0);

@@ -83,7 +83,7 @@ describe('certified nonlinear regression (NIST StRD)', () => {
         });
         expect(solution.sumOfSquares / problem.rss).toBeCloseTo(1, 8);
         const variance = solution.sumOfSquares / (problem.x.length - start.length);
-        const covariance = covarianceOf(solution.jacobian, variance);
+        const covariance = covarianceOf(solution.triangle, variance);
         problem.deviations.forEach((value, k) => {
           expect(Math.abs(Math.sqrt(covariance.get(k, k)) / value - 1)).toBeLessThan(1e-4);
         });
