@@ -119,7 +119,7 @@ describe('each verdict fires on what it is for', () => {
         }),
       },
     ],
-    ['wrong-scale', { profile: drivetrain, gains: { kp: 0.02 }, move: drive, spoil: scaled(39.37) }],
+    ['wrong-scale', { profile: drivetrain, gains: { kp: 0.3 }, move: drive, spoil: scaled(39.37) }],
     // A sensor in radians where degrees are meant: to the loop the machine is 57.3 times slower.
     ['wrong-scale', { profile: turret, gains: { kp: 0.02 }, move: turn, really: { topSpeed: 1116 / 57.2958 } }],
     [
