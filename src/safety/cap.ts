@@ -24,9 +24,9 @@ export function firstCap(profile: Profile, response: ResponseModel): number {
 }
 
 /**
- * Output cap of the next trial: all that the profile allows after a trial that kept to its band (or was promised none); as
- * it was after one that did not.
+ * Output cap of the next trial: all that the profile allows after a trial that kept to the band it was promised; as it was
+ * after one that left it, or that was promised none.
  */
 export function nextCap(profile: Profile, lastCap: number, inBand: boolean | null): number {
-  return inBand === false ? Math.min(lastCap, profile.limits.outputCap) : profile.limits.outputCap;
+  return inBand === true ? profile.limits.outputCap : Math.min(lastCap, profile.limits.outputCap);
 }

@@ -1,5 +1,7 @@
 import type { Profile } from '../mechanism/profile.ts';
+import { formatNumber } from '../mechanism/quantity.ts';
 import type { ChecklistItem, GateRefusal, Signature } from './hazard.ts';
+import { unaskedItems } from './items.ts';
 
 /** Ticks lapse after this, ms; design's safety, Gate. */
 const LAPSE = 15 * 60 * 1000;
@@ -29,9 +31,12 @@ export interface GateRequest {
   readonly stage: 'ready' | 'proportional' | 'integral' | 'derivative' | 'proof';
   /** Was a direction check passed since the last mechanical change? */
   readonly directionChecked: boolean;
-  /** Share of draws that leave the travel limits, and that swing wider and wider, in rehearsal. */
-  readonly outside: number;
-  readonly growing: number;
+  /**
+   * Share of draws that leave the travel limits, and that swing wider and wider, in rehearsal; null = there was nothing to
+   * rehearse on, which only the direction check may be run without.
+   */
+  readonly outside: number | null;
+  readonly growing: number | null;
   readonly items: readonly ChecklistItem[];
   readonly signature: Signature | null;
   /** ms since the epoch. */
@@ -90,16 +95,27 @@ function directionRule({ stage, directionChecked }: GateRequest): readonly GateR
   ];
 }
 
-function rehearsalRules({ outside, growing }: GateRequest): readonly GateRefusal[] {
-  const percent = (share: number) => `${Math.round(100 * share)} of 100`;
+function rehearsalRules({ outside, growing, stage }: GateRequest): readonly GateRefusal[] {
+  const percent = (share: number) => `${formatNumber(100 * share, 2)} of 100`;
+  if (outside === null || growing === null) {
+    if (stage === 'ready') return [];
+    return [
+      {
+        rule: 'travel',
+        what: 'Nothing is known of the machine, so that the trial could not be rehearsed.',
+        remedy: 'Run the direction check first, or fill in motor, drive and load.',
+      },
+    ];
+  }
   const refusals: GateRefusal[] = [];
-  if (outside > MOST_UNSAFE)
+  // Asked this way round, a share that is no number refuses.
+  if (!(outside <= MOST_UNSAFE))
     refusals.push({
       rule: 'travel',
       what: `${percent(outside)} rehearsals leave the travel limits.`,
       remedy: 'Lower the gains or the output cap, or give the move more room.',
     });
-  if (growing > MOST_UNSAFE)
+  if (!(growing <= MOST_UNSAFE))
     refusals.push({
       rule: 'swing',
       what: `${percent(growing)} rehearsals swing wider and wider.`,
@@ -119,6 +135,13 @@ function signatureRules(request: GateRequest): readonly GateRefusal[] {
       },
     ];
   const refusals: GateRefusal[] = [];
+  const unasked = unaskedItems(request.profile, items);
+  if (unasked.length > 0)
+    refusals.push({
+      rule: 'ticks',
+      what: `The checklist is not whole: ${unasked.join(', ')} not asked.`,
+      remedy: 'Take the checklist of this trial as it is made.',
+    });
   const missing = items.filter((item) => !signature.ticked.includes(item.id));
   if (missing.length > 0)
     refusals.push({
@@ -128,13 +151,13 @@ function signatureRules(request: GateRequest): readonly GateRefusal[] {
     });
   if (signature.name.trim() === '')
     refusals.push({ rule: 'name', what: 'Nobody has signed.', remedy: 'The person who ticked enters a name.' });
-  if (now - signature.at > LAPSE || now < signature.at)
+  if (!(now - signature.at <= LAPSE && now >= signature.at))
     refusals.push({
       rule: 'lapsed',
       what: 'The ticks are more than 15 minutes old.',
       remedy: 'Go through the checklist again.',
     });
-  if (request.outputCap > signature.outputCap + 1e-9)
+  if (!(request.outputCap <= signature.outputCap + 1e-9))
     refusals.push({
       rule: 'cap',
       what: 'The output cap is higher than the one signed for.',

@@ -11,9 +11,11 @@ export interface HazardFigures {
   readonly topSpeed: number | null;
   /** J. */
   readonly energy: number | null;
-  /** Coasting after disable, motor open. */
+  /** True when the rotors' share of it is not known, so that there is more of it than this. */
+  readonly energyIsLeast?: boolean | undefined;
+  /** Distance after disable with the motor open (a speed loop: s); the fall of what falls is in it. */
   readonly coast: number | null;
-  /** Coasting after disable, motor shorted. */
+  /** The same with the motor shorted. */
   readonly coastShorted: number | null;
   /** m it can fall, J it gathers, s it takes; null when it cannot fall or is not known. */
   readonly drop: { readonly height: number; readonly energy: number; readonly time: number } | null;

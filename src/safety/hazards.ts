@@ -1,15 +1,13 @@
 import { fullOutput, type Gains } from '../controller/settings.ts';
-import { gravityOf, plantWith } from '../mechanism/plant-of.ts';
+import { plantWith } from '../mechanism/plant-of.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
-import { unitScale } from '../mechanism/units.ts';
 import { respond } from '../plant/respond.ts';
 import type { PlantModel, ResponseModel } from '../plant/response-model.ts';
-import { createTrialRunner } from '../trial/runner.ts';
+import { createTrialRunner, type TrialRunner } from '../trial/runner.ts';
 import { readingOf } from '../trial/simulate.ts';
+import { coastOpen, coastShorted } from './coasting.ts';
+import { dropOf, kineticEnergy, rimSpeedOf, rotorShare } from './energies.ts';
 import type { HazardFigures } from './hazard.ts';
-
-/** Standard acceleration of gravity, m/s² (ISO 80000-3; CGPM 1901). */
-const GRAVITY = 9.80665;
 
 /** s that a person takes to disable after seeing that something is wrong; design's safety, Figures. */
 export const REACTION = 0.7;
@@ -34,20 +32,41 @@ export function hazardFiguresOf(
   draws: readonly ResponseModel[] | null,
   trial: PlannedTrial,
 ): HazardFigures {
-  const runs =
-    draws === null || draws.length === 0 ? null : draws.map((response) => excursionOf(profile, response, trial));
-  const worst = (pick: (run: Excursion) => number) => (runs === null ? null : percentile(runs.map(pick), 0.99));
+  const known = draws === null || draws.length === 0 ? null : excursionsOf(profile, draws, trial);
+  const worst = (pick: (run: Excursion) => number) => {
+    const value = known === null ? Number.NaN : percentile(known.map(pick), 0.99);
+    return Number.isFinite(value) ? value : null;
+  };
+  const goesPlaces = profile.quantity === 'position' || profile.kind === 'travel' || profile.kind === 'lift';
   const topSpeed = worst((run) => run.topSpeed);
+  const travelForward = goesPlaces ? worst((run) => run.forward) : null;
+  const travelBack = goesPlaces ? worst((run) => run.back) : null;
   return {
-    travelForward: profile.quantity === 'speed' ? null : worst((run) => run.forward),
-    travelBack: profile.quantity === 'speed' ? null : worst((run) => run.back),
+    travelForward,
+    travelBack,
     topSpeed,
     energy: topSpeed === null ? null : kineticEnergy(profile, topSpeed),
+    energyIsLeast: rotorShare(profile) === null,
     coast: worst((run) => run.coast),
     coastShorted: worst((run) => run.coastShorted),
-    drop: dropOf(profile, trial.move),
+    drop: dropOf(
+      profile,
+      profile.quantity === 'speed' ? null : reachOf(profile, trial.move, travelForward, travelBack),
+    ),
     rimSpeed: topSpeed === null ? null : rimSpeedOf(profile, topSpeed),
   };
+}
+
+/** Where the trial may take it, stops included; null when that is not known. */
+function reachOf(
+  { limits }: Profile,
+  { from }: Move,
+  forward: number | null,
+  back: number | null,
+): readonly [number, number] | null {
+  if (forward === null || back === null) return null;
+  const low = Math.max(limits.min ?? Number.NEGATIVE_INFINITY, from - back);
+  return [low, Math.min(limits.max ?? Number.POSITIVE_INFINITY, from + forward)];
 }
 
 interface Excursion {
@@ -58,9 +77,7 @@ interface Excursion {
   readonly coastShorted: number;
 }
 
-/** How far, how fast and how long one draw goes: the trial, then a late disable at its fastest, then coasting. */
-function excursionOf(profile: Profile, response: ResponseModel, trial: PlannedTrial): Excursion {
-  const free = { ...plantWith(profile, response), stops: { min: null, max: null }, coupling: null };
+function excursionsOf(profile: Profile, draws: readonly ResponseModel[], trial: PlannedTrial): readonly Excursion[] {
   const runner = createTrialRunner({
     controller: profile.controller,
     reading: { ...readingOf(profile), noise: 0, resolution: 0 },
@@ -68,48 +85,81 @@ function excursionOf(profile: Profile, response: ResponseModel, trial: PlannedTr
     continuous: profile.continuous,
     shape: null,
     seed: 0,
-    lostBeyond: 20,
+    // A trial that runs away is seen to its end: how far is the question.
+    lostBeyond: null,
     parts: 'left out',
   });
-  const rows = runner.run(free, trial.gains, trial.move, trial.outputCap);
-  const { measured, output, time } = runner.columns;
-  const full = fullOutput(profile.controller);
-  if (profile.quantity === 'speed') {
-    let fastest = 0;
-    for (let row = 0; row < rows; row++) fastest = Math.max(fastest, Math.abs(measured[row] ?? 0));
-    return {
-      forward: 0,
-      back: 0,
-      topSpeed: fastest,
-      coast: coastOpen(response, fastest).time,
-      coastShorted: coastShorted(response, fastest).time,
-    };
+  const of = profile.quantity === 'speed' ? speedExcursion : excursion;
+  return draws.map((response) => {
+    const free = { ...plantWith(profile, response), stops: { min: null, max: null }, coupling: null };
+    return of(profile, free, runner, trial);
+  });
+}
+
+/**
+ * How fast one draw of a speed loop runs, how far that takes it, a late disable and coasting included, and for how long (s; of
+ * what goes along a line, how far) it runs on after disable.
+ */
+function speedExcursion(profile: Profile, plant: PlantModel, runner: TrialRunner, trial: PlannedTrial): Excursion {
+  const rows = runner.run(plant, trial.gains, trial.move, trial.outputCap);
+  const { measured, time } = runner.columns;
+  let forward = 0;
+  let back = 0;
+  let fastest = 0;
+  for (let row = 0; row < rows; row++) {
+    const speed = measured[row] ?? 0;
+    const gone = speed * ((time[row] ?? 0) - (time[row - 1] ?? 0));
+    if (gone > 0) forward += gone;
+    else back -= gone;
+    if (Math.abs(speed) > Math.abs(fastest)) fastest = speed;
   }
+  const open = coastOpen(plant.response, Math.abs(fastest));
+  const shorted = coastShorted(plant.response, Math.abs(fastest));
+  const late = Math.abs(fastest) * REACTION + open.distance;
+  const along = profile.kind === 'travel' || profile.kind === 'lift';
+  return {
+    forward: forward + (fastest > 0 ? late : 0),
+    back: back + (fastest < 0 ? late : 0),
+    topSpeed: Math.abs(fastest),
+    coast: along ? open.distance : open.time,
+    coastShorted: along ? shorted.distance : shorted.time,
+  };
+}
+
+/** How far, how fast and how long one draw goes: the trial, then a late disable at its fastest, then coasting or falling. */
+function excursion(profile: Profile, plant: PlantModel, runner: TrialRunner, trial: PlannedTrial): Excursion {
+  const rows = runner.run(plant, trial.gains, trial.move, trial.outputCap);
+  const { measured, output, time } = runner.columns;
+  const { from } = trial.move;
   let forward = 0;
   let back = 0;
   let fastest = 0;
   let at = 0;
   for (let row = 1; row < rows; row++) {
-    const from = (measured[row] ?? 0) - trial.move.from;
-    forward = Math.max(forward, from);
-    back = Math.max(back, -from);
-    const dt = (time[row] ?? 0) - (time[row - 1] ?? 0);
-    const speed = ((measured[row] ?? 0) - (measured[row - 1] ?? 0)) / dt;
-    if (Math.abs(speed) > Math.abs(fastest)) {
-      fastest = speed;
-      at = row;
-    }
+    const gone = (measured[row] ?? 0) - from;
+    forward = Math.max(forward, gone);
+    back = Math.max(back, -gone);
+    const speed = ((measured[row] ?? 0) - (measured[row - 1] ?? 0)) / ((time[row] ?? 0) - (time[row - 1] ?? 0));
+    if (Math.abs(speed) > Math.abs(fastest)) [fastest, at] = [speed, row];
   }
-  // The worst moment to be late: at its fastest, with the output stuck where it is, for the reaction time, then coasting.
-  const state = runOn(free, { position: measured[at] ?? 0, speed: fastest }, (output[at] ?? 0) / full);
-  const coasting = coastOpen(response, Math.abs(state.speed));
-  const end = state.position + Math.sign(state.speed) * coasting.distance - trial.move.from;
+  // The worst moment to be late, two ways: the output stuck where it is, and the machine going on as fast as it went.
+  const start = { position: measured[at] ?? from, speed: fastest };
+  const stuck = runOn(plant, start, (output[at] ?? 0) / fullOutput(profile.controller));
+  const steady = { position: start.position + fastest * REACTION, speed: fastest };
+  const topSpeed = Math.max(Math.abs(fastest), Math.abs(stuck.speed));
+  const coast = coastOpen(plant.response, topSpeed).distance;
+  for (const { position, speed } of [stuck, steady]) {
+    const rest = position + Math.sign(speed) * coastOpen(plant.response, Math.abs(speed)).distance - from;
+    forward = Math.max(forward, rest);
+    back = Math.max(back, -rest);
+  }
+  const fall = fallOf(profile, plant, [from - back, from + forward]);
   return {
-    forward: Math.max(forward, end),
-    back: Math.max(back, -end),
-    topSpeed: Math.max(Math.abs(fastest), Math.abs(state.speed)),
-    coast: coasting.distance,
-    coastShorted: coastShorted(response, Math.abs(fastest)).distance,
+    forward: Math.max(forward, fall.end - from),
+    back: Math.max(back, from - fall.start),
+    topSpeed,
+    coast: Math.max(coast, fall.distance),
+    coastShorted: Math.max(coastShorted(plant.response, topSpeed).distance, fall.distance),
   };
 }
 
@@ -118,89 +168,35 @@ function runOn(plant: PlantModel, start: { position: number; speed: number }, ou
   const moment = 1e-4;
   const time = Float64Array.of(0, REACTION - moment, REACTION);
   const stuck = { ...plant, response: { ...plant.response, delay: 0 } };
-  const [, before = start.position, position = start.position] = respond(
-    stuck,
-    start,
-    time,
-    time.map(() => output),
-  );
+  const outputs = time.map(() => output);
+  const [, before = start.position, position = start.position] = respond(stuck, start, time, outputs);
   return { position, speed: (position - before) / moment };
 }
 
-export interface Coast {
-  /** s. */
-  readonly time: number;
-  /** Profile unit (for a speed loop: unit·s). */
-  readonly distance: number;
-}
-
 /**
- * Coasting with the motor shorted: its own back-EMF and drag stop it.
+ * Where weight takes it once nothing drives it: as far as the limit below, when its weight is more than its drag. A motor that
+ * is shorted slows the fall and does not stop it.
  *
- * Source: closed form of τ·v′ = −v − K·c from v₀ to rest.
+ * @returns ends of the reach with the fall in it, and the longest fall; without end where there is no limit below
  */
-export function coastShorted({ topSpeed, lag, drag }: ResponseModel, speed: number): Coast {
-  const braking = topSpeed * drag;
-  if (speed <= 0) return { time: 0, distance: 0 };
-  if (braking <= 0) return { time: Number.POSITIVE_INFINITY, distance: lag * speed };
-  const time = lag * Math.log1p(speed / braking);
-  return { time, distance: lag * speed - braking * time };
-}
-
-/** Coasting with the motor open: drag alone stops it, at the constant rate K·c/τ (closed form). */
-export function coastOpen({ topSpeed, lag, drag }: ResponseModel, speed: number): Coast {
-  const rate = (topSpeed * drag) / lag;
-  if (speed <= 0) return { time: 0, distance: 0 };
-  if (rate <= 0) return { time: Number.POSITIVE_INFINITY, distance: Number.POSITIVE_INFINITY };
-  return { time: speed / rate, distance: speed ** 2 / (2 * rate) };
-}
-
-/**
- * Kinetic energy, J: ½·m·v² or ½·J·ω², with the rotors' share through the reduction where it is known.
- *
- * @param speed profile unit/s, or the quantity itself for a speed loop
- * @returns null when mass or inertia is not known
- */
-export function kineticEnergy(profile: Profile, speed: number): number | null {
-  const { load, drive, motor, kind } = profile;
-  const si = speed * unitScale(profile.unit).toSi;
-  const line = kind === 'travel' || kind === 'lift';
-  const own = line ? load?.mass : (load?.inertia ?? pointInertia(profile));
-  if (own == null) return null;
-  const rotors = (motor?.rotorInertia ?? 0) * (motor?.count ?? 0) * (drive?.reduction ?? 0) ** 2;
-  const radius = drive?.radius ?? 1;
-  const moving = own + (line ? rotors / radius ** 2 : rotors);
-  return 0.5 * moving * si ** 2;
-}
-
-function pointInertia({ load }: Profile): number | null {
-  if (load?.mass == null || load.centreOfMass === null) return null;
-  return load.mass * load.centreOfMass ** 2;
-}
-
-/** Height to the lowest point it can fall to, what it gathers and how long it takes; null when it cannot fall or is not known. */
-export function dropOf(profile: Profile, move: Move): HazardFigures['drop'] {
-  const { load, limits, kind } = profile;
-  if (load?.mass == null || limits.min === null) return null;
-  const toSi = unitScale(profile.unit).toSi;
-  const highest = Math.max(move.from, move.to);
-  let height: number;
-  if (kind === 'lift') height = (highest - limits.min) * toSi;
-  else if (kind === 'arm' && load.centreOfMass !== null) {
-    const gravity = gravityOf(profile);
-    const level = gravity.kind === 'cosine' ? gravity.level : 0;
-    const rise = (reading: number) => Math.sin((reading - level) * toSi) * (load.centreOfMass ?? 0);
-    height = rise(highest) - rise(limits.min);
-  } else return null;
-  if (height <= 0) return null;
-  return { height, energy: load.mass * GRAVITY * height, time: Math.sqrt((2 * height) / GRAVITY) };
-}
-
-/** m/s at the rim of what spins; null when its radius is not known. */
-export function rimSpeedOf(profile: Profile, speed: number): number | null {
-  const radius = profile.drive?.radius ?? null;
-  if (profile.kind !== 'spin' || radius === null) return null;
-  return speed * unitScale(profile.unit).toSi * radius;
+function fallOf(
+  { limits }: Profile,
+  { response, gravity }: PlantModel,
+  [low, high]: readonly [number, number],
+): { readonly start: number; readonly end: number; readonly distance: number } {
+  const none = { start: low, end: high, distance: 0 };
+  if (gravity.kind === 'none' || response.hold <= Math.min(response.drag, response.dragBack)) return none;
+  const { level, radiansPerUnit } = gravity.kind === 'cosine' ? gravity : { level: 0, radiansPerUnit: 0 };
+  const crest = Math.PI / 2;
+  const weighs = (reading: number) => Math.cos((reading - level) * radiansPerUnit);
+  // An arm whose reach crosses the upright can fall to either side.
+  const over = radiansPerUnit > 0 && (high - level) * radiansPerUnit > crest && (low - level) * radiansPerUnit < crest;
+  const falls = { back: over || weighs(low) > 0 || weighs(high) > 0, on: over || weighs(low) < 0 || weighs(high) < 0 };
+  const start = falls.back ? Math.min(low, limits.min ?? Number.NEGATIVE_INFINITY) : low;
+  const end = falls.on ? Math.max(high, limits.max ?? Number.POSITIVE_INFINITY) : high;
+  const bounded = [Math.max(low, limits.min ?? low), Math.min(high, limits.max ?? high)] as const;
+  const distance = Math.max(falls.back ? bounded[1] - start : 0, falls.on ? end - bounded[0] : 0);
+  return { start, end, distance };
 }
 
 function percentile(values: readonly number[], share: number): number {
