@@ -7,6 +7,7 @@ interface OdexSolver {
   relativeTolerance: number | number[];
   denseOutput: boolean;
   initialStepSize: number;
+  maxStepSize: number;
   solve(
     f: (t: number, y: number[]) => number[],
     start: number,
@@ -27,6 +28,7 @@ export interface Mode {
  * Integrates a mode with odex from `from` to `to` at 1e-13, or to where a guard that was positive comes to zero: found on the dense
  * output, then integrated to anew.
  *
+ * @param longestStep s; two sign changes of a guard within one step go unseen
  * @returns end time, state and the guard that ended it (−1 = none)
  */
 export function integrate(
@@ -34,9 +36,11 @@ export function integrate(
   y0: number[],
   from: number,
   to: number,
+  longestStep: number | null = null,
 ): { time: number; y: number[]; guard: number } {
   const solver = odex(y0.length);
   solver.denseOutput = true;
+  if (longestStep !== null) solver.maxStepSize = longestStep;
   let found = { time: to, guard: -1 };
   const wasPositive = mode.guards.map((guard) => guard(y0) > 0);
   const end = solver.solve(mode.slope, from, [...y0], to, (_n, t0, t1, y, dense) => {
