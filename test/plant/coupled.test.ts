@@ -49,6 +49,8 @@ function oracleCoupled(
   let time = 0;
   let torn = 0;
   for (let events = 0; time < duration && events < 200; events++) {
+    // A stop that takes the load's speed at once can leave the faces parting.
+    if (half > 0 && side !== 0 && side * spring(y, side) < -1e-9) side = 0;
     const now = side;
     const force = (s: number[]) => (now === 0 ? 0 : spring(s, now));
     const net = (s: number[]) => force(s) / gain - hold;
