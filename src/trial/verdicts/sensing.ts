@@ -1,6 +1,7 @@
 import { fullOutput } from '../../controller/settings.ts';
 import { plantWith } from '../../mechanism/plant-of.ts';
 import { formatNumber } from '../../mechanism/quantity.ts';
+import { unitScale } from '../../mechanism/units.ts';
 import { respond } from '../../plant/respond.ts';
 import { wrapError } from '../course.ts';
 import {
@@ -156,25 +157,31 @@ function possibleSpeedStep(known: Look['response'], dt: number, look: Look): num
   return 4 * known.topSpeed * Math.min(1, dt / known.lag) + 0.15 * known.topSpeed;
 }
 
+interface UnitRatio {
+  readonly ratio: number;
+  readonly words: string;
+  readonly of: 'length' | 'angle' | 'any';
+}
+
 /** Ratios that a mixed-up unit leaves, with the words for it. */
-const UNIT_RATIOS: readonly (readonly [ratio: number, words: string])[] = [
-  [25.4, 'millimetres for inches'],
-  [2.54, 'centimetres for inches'],
-  [39.37, 'inches for metres'],
-  [3.281, 'feet for metres'],
-  [10, 'a factor of ten'],
-  [12, 'inches for feet'],
-  [100, 'centimetres for metres, or percent for a fraction'],
-  [1000, 'millimetres for metres'],
-  [57.2958, 'degrees for radians'],
-  [6.28319, 'radians for turns'],
-  [360, 'degrees for turns'],
-  [60, 'per minute for per second'],
-  [9.5493, 'rpm for rad/s'],
-  [1024, 'raw ticks of the sensor'],
-  [2048, 'raw ticks of the sensor'],
-  [4096, 'raw ticks of the sensor'],
-  [8192, 'raw ticks of the sensor'],
+const UNIT_RATIOS: readonly UnitRatio[] = [
+  { ratio: 25.4, words: 'millimetres for inches', of: 'length' },
+  { ratio: 2.54, words: 'centimetres for inches', of: 'length' },
+  { ratio: 39.37, words: 'inches for metres', of: 'length' },
+  { ratio: 3.281, words: 'feet for metres', of: 'length' },
+  { ratio: 12, words: 'inches for feet', of: 'length' },
+  { ratio: 1000, words: 'millimetres for metres', of: 'length' },
+  { ratio: 57.2958, words: 'degrees for radians', of: 'angle' },
+  { ratio: 6.28319, words: 'radians for turns', of: 'angle' },
+  { ratio: 360, words: 'degrees for turns', of: 'angle' },
+  { ratio: 60, words: 'per minute for per second', of: 'angle' },
+  { ratio: 9.5493, words: 'rpm for rad/s', of: 'angle' },
+  { ratio: 10, words: 'a factor of ten', of: 'any' },
+  { ratio: 100, words: 'a factor of a hundred', of: 'any' },
+  { ratio: 1024, words: 'raw ticks of the sensor', of: 'any' },
+  { ratio: 2048, words: 'raw ticks of the sensor', of: 'any' },
+  { ratio: 4096, words: 'raw ticks of the sensor', of: 'any' },
+  { ratio: 8192, words: 'raw ticks of the sensor', of: 'any' },
 ];
 
 /** The reading moves by another scale than the nameplate says it can. */
@@ -184,13 +191,16 @@ export const wrongScale: Rule = (look) => {
   const size = Math.abs(Math.log(ratio));
   // A nameplate wrong by 30 %, friction and load together stay well under this.
   if (size < Math.log(2.2)) return null;
-  const match = UNIT_RATIOS.find(([known]) => Math.abs(size - Math.log(known)) < 0.22);
+  const { dimension } = unitScale(look.profile.unit);
+  const match = UNIT_RATIOS.find(
+    (known) => (known.of === 'any' || known.of === dimension) && Math.abs(size - Math.log(known.ratio)) < 0.22,
+  );
   if (match === undefined && size < Math.log(4)) return null;
   const times = ratio > 1 ? `${formatNumber(ratio, 2)} times as far` : `only 1/${formatNumber(1 / ratio, 2)} as far`;
   const likely =
     match === undefined
       ? 'That is no unit ratio; check reduction, radius and the sensor’s conversion.'
-      : `That looks like ${match[1]}${ratio > 1 ? '' : ', the other way round'}.`;
+      : `That looks like ${match.words}${ratio > 1 ? '' : ', the other way round'}.`;
   return verdict(
     'wrong-scale',
     `The reading moved ${times} as the nameplate says this output can move it. ${likely}`,
@@ -202,7 +212,10 @@ export const wrongScale: Rule = (look) => {
 /** Measured motion over that of the nameplate under the same output; null when there is too little of either. */
 function scaleRatio(look: Look): number | null {
   const sent = fractions(look);
-  if (sent === null || look.nameplate === null) return null;
+  if (look.nameplate === null) return null;
+  // A usable model has drag told apart from speed: better than motion over expected motion.
+  if (look.response !== null) return look.response.topSpeed / look.nameplate.topSpeed;
+  if (sent === null || !drivenHard(sent, look)) return null;
   const { time, measured } = look.samples;
   const plant = {
     ...plantWith(look.profile, { ...look.nameplate, dragBack: look.nameplate.drag }),
@@ -231,6 +244,12 @@ function scaleRatio(look: Look): number | null {
   }
   if (farthest < noticeable(look) || expected < 2 * noticeable(look) * 1e-3 || own === 0 || both <= 0) return null;
   return both / own;
+}
+
+/** Was it driven so hard that drag the nameplate misjudges cannot pass for a scale? */
+function drivenHard(sent: Float64Array, look: Look): boolean {
+  const peak = sent.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
+  return peak - holdOf(look) >= Math.max(0.15, 3 * breakawayOf(look));
 }
 
 /** Rows until the output first turns or fades: there drag and weight matter least. */
