@@ -30,7 +30,6 @@ beforeAll(async () => {
 const words = ${JSON.stringify([join(OUTSIDE, 'simulator.mjs'), join(OUTSIDE, 'mechanisms/outside-hoist.json')])};
 process.exitCode = spawnSync(process.execPath, words, { stdio: 'inherit' }).status ?? 1;\n`;
   writeFileSync(join(cwd, 'simulator.mjs'), start);
-  writeFileSync(join(cwd, 'rig'), `#!${process.execPath} --input-type=module\n`);
   writeFileSync(join(cwd, 'rig'), `#!/bin/sh\nexec '${process.execPath}' simulator.mjs\n`);
   chmodSync(join(cwd, 'rig'), 0o755);
 });
@@ -40,7 +39,9 @@ test.each(examples)('%s', async (line) => {
   expect(program).toBe('holdfast');
   // A starter is never powered: where an example powers one, that is the answer a person gets until it is copied.
   const powers = words.some((word) => word.startsWith('cmd:./rig')) && words[0] === 'tune';
-  const { code, err } = await holdfast([...words, '--profiles', cwd], { cwd, answer: () => 'y' });
+  // The stand-in for a person's own simulator is another machine than the starter: two trials of it will do.
+  const short = words.some((word) => word.startsWith('cmd:')) && words.includes('tune') ? ['--trials', '2'] : [];
+  const { code, err } = await holdfast([...words, ...short, '--profiles', cwd], { cwd, answer: () => 'y' });
   expect(err).not.toContain('defect');
   expect([code, err]).toEqual([expect.toBeOneOf(powers ? [4] : [0, 1]), err]);
 });
