@@ -1,4 +1,4 @@
-import stringWidth from 'string-width';
+import { textWidth } from '../record/text-width.ts';
 import { coloured, glyphOf, LAYERS, LOOKS } from './looks.ts';
 import { valueAt } from './resample.ts';
 import type { ChartSpec, Line, Style } from './spec.ts';
@@ -14,14 +14,14 @@ export function legendRows(lines: readonly Line[], width: number, mostRows: numb
     const glyphs = glyphOf(role, style).repeat(2);
     const said = clip(name, width - 5, style);
     const gap = used > 0 ? '   ' : '  ';
-    const size = stringWidth(said) + 3 + gap.length;
+    const size = textWidth(said) + 3 + gap.length;
     if (used > 0 && used + size > width) {
       rows.push(row);
       row = '';
       used = 0;
     }
     row += `${used > 0 ? gap : '  '}${coloured(glyphs, LOOKS[role].colour, style)} ${said}`;
-    used += used > 0 ? size : stringWidth(said) + 5;
+    used += used > 0 ? size : textWidth(said) + 5;
   }
   if (used > 0) rows.push(row);
   return rows.slice(0, mostRows);
@@ -49,12 +49,12 @@ export function readOut(spec: ChartSpec, step: number, style: Style): string {
 
 /** A text of at most `width` columns, cut with a mark where it is longer; wide characters count as two. */
 export function clip(text: string, width: number, style: Style): string {
-  if (stringWidth(text) <= width) return text;
+  if (textWidth(text) <= width) return text;
   const mark = style.unicode ? '…' : '..';
   let cut = '';
-  let used = stringWidth(mark);
+  let used = textWidth(mark);
   for (const character of text) {
-    used += stringWidth(character);
+    used += textWidth(character);
     if (used > width) break;
     cut += character;
   }
