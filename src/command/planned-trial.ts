@@ -14,9 +14,9 @@ import { checklistOf } from '../safety/items.ts';
 /** What a trial could do: its checklist, and how its rehearsals went. */
 export interface TrialDangers {
   readonly checklist: Checklist;
-  /** Shares of the rehearsals that leave the limits, and that swing wider; 0 where nothing is known to rehearse on. */
-  readonly outside: number;
-  readonly growing: number;
+  /** Shares of the rehearsals that leave the limits, and that swing wider; null where nothing is known to rehearse on. */
+  readonly outside: number | null;
+  readonly growing: number | null;
 }
 
 const DRAWS = 64;
@@ -30,7 +30,7 @@ export function dangersOf(
 ): TrialDangers {
   const responses = knownResponses(profile, learnt, seed);
   const checklist = checklistOf(profile, hazardFiguresOf(profile, responses, proposal), proposal);
-  if (responses === null) return { checklist, outside: 0, growing: 0 };
+  if (responses === null) return { checklist, outside: null, growing: null };
   const draws = responses.map((response) => ({ response, plant: plantWith(profile, response) }));
   const rehearsal = rehearsalOf(profile, proposal.duration, profile.target.tolerance, seed);
   const { outside, growing } = checkSafety(profile, draws, rehearsal, proposal);
