@@ -1,9 +1,9 @@
 import type { Proposal } from '../coach/step.ts';
-import { fullOutput } from '../controller/settings.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { Checklist } from '../safety/hazard.ts';
 import { NOT_KNOWN } from '../safety/items.ts';
+import { capText } from './gains-text.ts';
 import { columned, wrapped } from './page.ts';
 
 /** What this trial could do, a line a figure; what is not known says so. */
@@ -48,16 +48,6 @@ export function trialLine(proposal: Proposal, profile: Profile): string {
   const end = (value: number) => formatQuantity(value, profile.unit, resolution);
   const { move, outputCap, duration } = proposal;
   return `${end(move.from)} → ${end(move.to)}, recorded for ${formatNumber(duration, 2)} s, ${capText(outputCap, profile)}`;
-}
-
-const OUTPUT_WORDS = { fraction: '', percent: ' %', volts: ' V' } as const;
-
-/** An output cap (fraction of full) as the controller says it. */
-export function capText(outputCap: number, profile: Profile): string {
-  if (outputCap >= 1) return 'full output allowed';
-  const { unit } = profile.controller.output;
-  const own = `${formatNumber(outputCap * fullOutput(profile.controller), 3)}${OUTPUT_WORDS[unit]} output`;
-  return unit === 'percent' ? `at most ${own}` : `at most ${own} (${formatNumber(100 * outputCap, 2)} % of full)`;
 }
 
 /** A whole checklist on paper: figures, boxes to tick, when to stop, what comes after. */

@@ -1,11 +1,18 @@
 import { Option } from 'commander';
-import { type Convention, conventionOf, NoEquivalent } from '../controller/forms.ts';
+import {
+  type Convention,
+  conventionOf,
+  type GainLine,
+  gainLines,
+  NoEquivalent,
+  toConvention,
+} from '../controller/forms.ts';
 import { fullOutput, type GainForm, type OutputUnit, type TimeBase } from '../controller/settings.ts';
+import { formatNumber } from '../mechanism/quantity.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
-import { type GainEntry, gainEntries } from './gains-text.ts';
 import { positive } from './numbers.ts';
 import { columned, spelt } from './page.ts';
 import { addGainOptions, gainsTyped, type TypedGains } from './typed-gains.ts';
@@ -67,9 +74,9 @@ async function gains(name: string, options: GainsOptions, context: CommandContex
   if (convention.period !== own.period) {
     context.edge.err('Another period is another loop: these gains were not proven at it.\n');
   }
-  let entries: readonly GainEntry[];
+  let entries: readonly GainLine[];
   try {
-    entries = gainEntries(canonical, profile, convention);
+    entries = gainLines(toConvention(canonical, fullOutput(profile.controller), convention), convention, profile.unit);
   } catch (error) {
     if (error instanceof NoEquivalent) throw unusable(error.message, error.remedy);
     throw error;
@@ -80,7 +87,7 @@ async function gains(name: string, options: GainsOptions, context: CommandContex
       profile: profile.name,
       canonical,
       convention,
-      entered: Object.fromEntries(entries.map(({ label, number, unit }) => [label, { value: number, unit }])),
+      entered: Object.fromEntries(entries.map(({ label, value, unit }) => [label, { value, unit }])),
     }),
     text: () => spelt(gainsText(entries, convention, fullOutput(profile.controller)), context.style),
   });
@@ -96,10 +103,10 @@ function fullIn(unit: OutputUnit, own: Convention, volts: number | null): number
   throw wrongUse('How many volts full output is, is not known.', 'Say it with --full, such as --full 12.');
 }
 
-function gainsText(entries: readonly GainEntry[], convention: Convention, own: number): string {
+function gainsText(entries: readonly GainLine[], convention: Convention, own: number): string {
   const { form, timeBase, outputUnit, fullOutput: full, period } = convention;
   const head = `${form} form, times in ${timeBase}${timeBase === 'ticks' ? ` of ${period} s` : ''}, output as ${outputUnit} up to ${full}`;
-  const rows = entries.map(({ label, value, unit }) => [label, value, unit]);
+  const rows = entries.map(({ label, value, unit }) => [label, value === null ? 'off' : formatNumber(value, 5), unit]);
   const note = full === own ? [] : ['', `Full output ${full} there is full output ${own} in the profile.`];
   return [head, ...columned(rows, ['left', 'right', 'left']).map((line) => `  ${line}`), ...note, ''].join('\n');
 }
