@@ -1,4 +1,4 @@
-import type { Hazard, Profile } from '../mechanism/profile.ts';
+import type { Hazard, Move, Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { Checklist, ChecklistItem, HazardFigures } from './hazard.ts';
 import type { PlannedTrial } from './hazards.ts';
@@ -42,7 +42,8 @@ const ALWAYS_ASKED = ['disable', 'voice', 'area', 'eyes', 'hands', 'battery', 'r
 /** Does the trial take it from one place to another? A speed loop about an axis turns where it stands. */
 const goesPlaces = ({ quantity, kind }: Profile) => quantity === 'position' || kind === 'travel' || kind === 'lift';
 
-const length = (profile: Profile, value: number | null) =>
+/** A distance of the trial's; never a number for what is not known. */
+export const lengthText = (profile: Profile, value: number | null): string =>
   value === null || !Number.isFinite(value) ? NOT_KNOWN : formatQuantity(value, distanceUnit(profile.unit));
 
 /** The unit of a distance: a speed loop's without the "per second". */
@@ -55,7 +56,7 @@ type Items = (profile: Profile, figures: HazardFigures, trial: PlannedTrial) => 
 const ALWAYS: Items = (profile, figures, trial) => [
   item('disable', 'The disable switch is within reach and was tried today.'),
   item('voice', 'One person speaks; everyone else is silent while it is powered.'),
-  item('area', areaText(profile, figures)),
+  item('area', areaText(profile, figures, trial)),
   item('eyes', 'Eye protection is on, everyone near.'),
   item('hands', 'No hands, hair, sleeves or lanyards inside its envelope.'),
   item('battery', 'The battery is strapped in and its leads are undamaged.'),
@@ -67,11 +68,21 @@ const ALWAYS: Items = (profile, figures, trial) => [
   item('ends', 'It is agreed what ends the trial, and who says the word.'),
 ];
 
-function areaText(profile: Profile, figures: HazardFigures): string {
+function areaText(profile: Profile, figures: HazardFigures, { move }: PlannedTrial): string {
   const { travelForward, travelBack } = figures;
   if (!goesPlaces(profile))
     return `The area is clear all round: it turns where it stands, with ${energyText(figures)}.`;
-  return `The area is clear on both sides: it can reach ${length(profile, travelForward)} forward and ${length(profile, travelBack)} back of its start, a late disable included, with ${energyText(figures)}.`;
+  const reach = `it can reach ${lengthText(profile, travelForward)} forward and ${lengthText(profile, travelBack)} back of its start`;
+  return `The area is clear on both sides: ${reach}, a late disable included, with ${energyText(figures)}.${stopText(profile, figures, move)}`;
+}
+
+/** Said when the reach goes beyond a travel limit; what falls rests on its lower one anyhow. */
+function stopText({ limits }: Profile, { travelForward, travelBack }: HazardFigures, { from }: Move): string {
+  const upper = limits.max !== null && travelForward !== null && from + travelForward > limits.max;
+  const lower = limits.min !== null && travelBack !== null && from - travelBack < limits.min;
+  if (!upper && !lower) return '';
+  const ends = upper && lower ? 'either end' : upper ? 'the upper end' : 'the lower end';
+  return ` A late disable would drive it past ${ends} of its travel, into whatever stops it there.`;
 }
 
 /** "up to 202 J" – or that there is more of it, or that it is not known. */
@@ -89,7 +100,7 @@ const BY_HAZARD: readonly { readonly hazard: Hazard; readonly items: Items }[] =
       item('drives-blocks', 'Wheels were run off the floor first, and turned the right way.', 'drives'),
       item(
         'drives-floor',
-        `The floor is marked and clear for ${length(profile, figures.travelForward)} ahead and ${length(profile, figures.travelBack)} behind, with someone at the far end.`,
+        `The floor is marked and clear for ${lengthText(profile, figures.travelForward)} ahead and ${lengthText(profile, figures.travelBack)} behind, with someone at the far end.`,
         'drives',
       ),
     ],
@@ -186,7 +197,7 @@ function afterOf(profile: Profile, figures: HazardFigures): readonly string[] {
   const stands =
     profile.quantity === 'speed' && !goesPlaces(profile)
       ? seconds(figures.coast)
-      : `another ${length(profile, figures.coast)}`;
+      : `another ${lengthText(profile, figures.coast)}`;
   return [
     'Disable first, then hands.',
     figures.coast === null
