@@ -2,43 +2,39 @@ import type { Proposal } from '../coach/step.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { Checklist } from '../safety/hazard.ts';
-import { NOT_KNOWN } from '../safety/items.ts';
+import { lengthText, NOT_KNOWN } from '../safety/items.ts';
 import { capText } from './gains-text.ts';
 import { columned, wrapped } from './page.ts';
 
 /** What this trial could do, a line a figure; what is not known says so. */
 export function dangerLines({ figures }: Checklist, profile: Profile): readonly string[] {
-  const amount = (value: number | null, unit = '') =>
-    value === null || !Number.isFinite(value) ? NOT_KNOWN : `${formatNumber(value, 3)}${unit}`;
-  const inUnit = (value: number | null) =>
-    value === null || !Number.isFinite(value) ? NOT_KNOWN : formatQuantity(value, profile.unit);
-  const speed = profile.quantity === 'speed';
-  const perSecond = (value: number | null) =>
-    value === null || !Number.isFinite(value)
-      ? NOT_KNOWN
-      : `${formatNumber(value, 3)} ${profile.unit}${speed ? '' : '/s'}`;
-  const rows: string[][] = speed
-    ? [['fastest', perSecond(figures.topSpeed)]]
-    : [
-        ['can travel', `${inUnit(figures.travelForward)} forward, ${inUnit(figures.travelBack)} back of its start`],
-        ['fastest', perSecond(figures.topSpeed)],
-      ];
-  rows.push(['energy', amount(figures.energy, ' J')]);
-  const coast = (value: number | null) => (speed ? amount(value, ' s') : inUnit(value));
-  rows.push([
-    'coasts on',
-    `${coast(figures.coast)} after disable (${coast(figures.coastShorted)} with the motor braking)`,
-  ]);
-  if (profile.hazards.includes('falls')) {
-    const { drop } = figures;
-    rows.push([
-      'can drop',
-      drop === null
+  const number = (value: number | null, unit: string) =>
+    value === null || !Number.isFinite(value) ? NOT_KNOWN : `${formatNumber(value, 3)} ${unit}`;
+  const turnsInPlace = profile.quantity === 'speed' && profile.kind !== 'travel' && profile.kind !== 'lift';
+  const coast = (value: number | null) => (turnsInPlace ? number(value, 's') : lengthText(profile, value));
+  const { drop } = figures;
+  const rows: string[][] = [
+    ['fastest', number(figures.topSpeed, profile.quantity === 'speed' ? profile.unit : `${profile.unit}/s`)],
+    ['energy', `${figures.energyIsLeast && figures.energy !== null ? 'at least ' : ''}${number(figures.energy, 'J')}`],
+    [
+      'coasts on',
+      figures.coast === null
         ? NOT_KNOWN
-        : `${formatNumber(drop.height, 2)} m in ${formatNumber(drop.time, 2)} s, with ${formatNumber(drop.energy, 2)} J`,
+        : `${coast(figures.coast)} after disable; ${coast(figures.coastShorted)} with the motor braking`,
+    ],
+  ];
+  if (!turnsInPlace) {
+    const [forward, back] = [lengthText(profile, figures.travelForward), lengthText(profile, figures.travelBack)];
+    rows.unshift([
+      'can travel',
+      figures.travelForward === null ? NOT_KNOWN : `${forward} forward, ${back} back of its start`,
     ]);
   }
-  if (profile.kind === 'spin') rows.push(['rim speed', amount(figures.rimSpeed, ' m/s')]);
+  if (profile.hazards.includes('falls')) {
+    const fall = drop && `${number(drop.height, 'm')} in ${number(drop.time, 's')}, with ${number(drop.energy, 'J')}`;
+    rows.push(['can drop', fall ?? NOT_KNOWN]);
+  }
+  if (profile.kind === 'spin') rows.push(['rim speed', number(figures.rimSpeed, 'm/s')]);
   return columned(rows, ['left', 'left']);
 }
 
@@ -55,7 +51,7 @@ export function checklistText(checklist: Checklist, profile: Profile, width: num
   const bullet = (mark: string, text: string) =>
     wrapped(text, width - mark.length - 3).map((line, k) => `  ${k === 0 ? mark : ' '.repeat(mark.length)} ${line}`);
   return [
-    'What this trial can do, at its worst in 99 of 100 rehearsals',
+    'What this trial can do, at its worst',
     ...dangerLines(checklist, profile).flatMap((line) => wrapped(line, width - 2).map((part) => `  ${part}`)),
     '',
     'Before power',

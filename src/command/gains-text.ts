@@ -12,7 +12,7 @@ export function gainsLine(gains: Gains, profile: Profile): string {
   return `${shown.join(' · ')}${written === null ? '' : ` (${written})`}`;
 }
 
-/** An output cap in words: `at most 0.4 (40 % of full)`; nothing is said to be capped at full output. */
+/** An output cap in words: `output at most 0.4 (40 % of full)`; nothing is said to be capped at full output. */
 export function capText(outputCap: number, profile: Profile): string {
-  return outputCap >= 1 ? 'full output allowed' : `at most ${capWords(outputCap, profile)} output`;
+  return outputCap >= 1 ? 'full output allowed' : `output at most ${capWords(outputCap, profile)}`;
 }
