@@ -14,19 +14,7 @@ import { REMEDIES, verdictLines } from '../../src/report/verdicts.ts';
 import { hazardFiguresOf } from '../../src/safety/hazards.ts';
 import { checklistOf, NOT_KNOWN } from '../../src/safety/items.ts';
 import { VERDICTS } from '../../src/trial/verdict.ts';
-import {
-  ASCII,
-  figures,
-  gains,
-  learnt,
-  lift,
-  type NARROW,
-  proposal,
-  reading,
-  record,
-  UNICODE,
-  verdict,
-} from './made.ts';
+import { ASCII, figures, gains, learnt, lift, NARROW, proposal, reading, record, UNICODE, verdict } from './made.ts';
 
 const checklist = checklistOf(lift, hazardFiguresOf(lift, [learnt.response], proposal), proposal);
 const margins = { gain: 4.893, phase: 39.19, delay: 0.1033, maxSensitivity: 1.808, spectralRadius: 0.95 };
