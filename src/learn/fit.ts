@@ -43,6 +43,7 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
   const problem = (sigma: number, weight: number) =>
     residualsFor({ drives, answers, centre, deviations, free, delayScale, sigma, weight });
   // First as if every residual counted: what the prior would pull aside must not pass for a poor model.
+  const rows = drives.reduce((sum, drive) => sum + drive.time.length, 0);
   const open = problem(5 * floor, 1);
   const starts = bestStarts(
     problem(20 * floor, 1),
@@ -52,12 +53,14 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
     deviations,
     delayScale,
     profile,
+    rows < CHEAP_ROWS ? 2 * FOLLOWED : FOLLOWED,
   );
   let rough = starts
-    .map((start) => leastSquares(open, start, options(5, free, 0.03)))
+    .map((start) => leastSquares(open, start, options(5, free, 0.03, 'one')))
     .reduce((best, next) => (next.sumOfSquares < best.sumOfSquares ? next : best));
-  for (let round = 0; round < ROUNDS; round++) {
-    const next = leastSquares(open, exploreAround(open, rough), options(6, free, round % 2 === 0 ? 0.01 : 0.05));
+  const rounds = rows < CHEAP_ROWS ? 2 * ROUNDS : ROUNDS;
+  for (let round = 0; round < rounds; round++) {
+    const next = leastSquares(open, exploreAround(open, rough), options(6, free, round % 2 === 0 ? 0.01 : 0.05, 'one'));
     const gained = 1 - next.sumOfSquares / rough.sumOfSquares;
     if (gained > 0) rough = next;
     if (gained < 0.01) break;
@@ -84,10 +87,16 @@ export function fitModel(drives: readonly Drive[], profile: Profile, prior: Prio
 }
 
 /** Difference in prior deviations: wide enough to look over the small kinks that stick and slip leave in the cost. */
-const options = (maxIterations: number, free: readonly number[], difference = 0.01) => ({
+const options = (
+  maxIterations: number,
+  free: readonly number[],
+  difference = 0.01,
+  sides: 'one' | 'both' = 'both',
+) => ({
   maxIterations,
   tolerance: 1e-5,
   difference,
+  sides,
   typical: free.map(() => 1),
 });
 
@@ -184,6 +193,9 @@ const ROUNDS = 4;
 const CANDIDATES = 60;
 const FOLLOWED = 2;
 
+/** Rows under which a record is cheap to simulate, and twice as much is looked at. */
+const CHEAP_ROWS = 300;
+
 /**
  * The best few of many places to start from, drawn from the prior: the cost has valleys that a step cannot leave. The same draws
  * every time.
@@ -196,6 +208,7 @@ function bestStarts(
   deviations: readonly number[],
   delayScale: number,
   profile: Profile,
+  followed: number,
 ): readonly Float64Array[] {
   const chance = normalNumbers(20, CANDIDATES * free.length);
   const delays = [0.04, 0.3, 1, 2.5, 6].map(
@@ -222,7 +235,7 @@ function bestStarts(
   });
   return tried
     .sort((a, b) => a.sum - b.sum)
-    .slice(0, FOLLOWED)
+    .slice(0, followed)
     .map(({ start }) => start);
 }
 

@@ -10,6 +10,8 @@ export interface LeastSquaresOptions {
   readonly tolerance: number;
   /** Relative step of the central differences; larger for a cost with kinks. */
   readonly difference: number;
+  /** Differences to both sides, or to one at half the cost. */
+  readonly sides: 'one' | 'both';
   /** Size below which a parameter's step is taken absolutely, one a parameter. */
   readonly typical: readonly number[];
 }
@@ -34,7 +36,7 @@ export interface Solution {
  */
 export function leastSquares(residualsOf: Residuals, start: Float64Array, options: LeastSquaresOptions): Solution {
   let parameters = Float64Array.from(start);
-  let residuals = residualsOf(parameters);
+  let residuals = residualsOf(parameters).slice();
   let sum = sumOfSquares(residuals);
   if (!Number.isFinite(sum)) throw new RangeError('the residuals at the start are not finite');
   const count = parameters.length;
@@ -43,14 +45,14 @@ export function leastSquares(residualsOf: Residuals, start: Float64Array, option
   let growth = 2;
   let converged = false;
   let iterations = 0;
-  let reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals.length, options), residuals);
+  let reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals, options), residuals);
   for (; iterations < options.maxIterations && !converged; iterations++) {
     for (let j = 0; j < count; j++) scale[j] = Math.max(scale[j] ?? 0, columnNorm(reduced.triangle, j), 1e-300);
     let accepted = false;
     for (let attempt = 0; attempt < 25 && !accepted; attempt++) {
       const step = dampedStep(reduced.triangle, reduced.right, scale, damping);
       const next = parameters.map((value, j) => value + (step[j] ?? 0));
-      const nextResiduals = residualsOf(next);
+      const nextResiduals = residualsOf(next).slice();
       const nextSum = sumOfSquares(nextResiduals);
       const small = parameters.every(
         (value, j) => Math.abs(step[j] ?? 0) <= options.tolerance * (Math.abs(value) + (options.typical[j] ?? 1)),
@@ -75,7 +77,7 @@ export function leastSquares(residualsOf: Residuals, start: Float64Array, option
       }
     }
     if (!accepted) break;
-    reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals.length, options), residuals);
+    reduced = reduceColumns(jacobianOf(residualsOf, parameters, residuals, options), residuals);
   }
   return { parameters, residuals, triangle: reduced.triangle, sumOfSquares: sum, iterations, converged };
 }
@@ -117,11 +119,11 @@ function columnNorm(triangle: Triangle, column: number): number {
   return Math.sqrt(sum);
 }
 
-/** Central differences, a column a parameter. */
+/** Differences, a column a parameter. */
 function jacobianOf(
   residualsOf: Residuals,
   at: Float64Array,
-  rows: number,
+  base: Float64Array,
   options: LeastSquaresOptions,
 ): readonly Float64Array[] {
   const point = Float64Array.from(at);
@@ -130,9 +132,10 @@ function jacobianOf(
     point[j] = value + h;
     const column = residualsOf(point).slice();
     point[j] = value - h;
-    const below = residualsOf(point);
+    const below = options.sides === 'both' ? residualsOf(point) : base;
     point[j] = value;
-    for (let row = 0; row < rows; row++) column[row] = ((column[row] ?? 0) - (below[row] ?? 0)) / (2 * h);
+    const span = options.sides === 'both' ? 2 * h : h;
+    for (let row = 0; row < column.length; row++) column[row] = ((column[row] ?? 0) - (below[row] ?? 0)) / span;
     return column;
   });
 }

@@ -101,7 +101,7 @@ function asLogError(error: unknown, name: string): unknown {
 export async function eachLine(
   pieces: AsyncIterable<string>,
   name: string,
-  take: (text: string, line: number) => void | 'stop',
+  take: (text: string, line: number) => 'stop' | undefined,
 ): Promise<void> {
   let rest = '';
   let line = 0;

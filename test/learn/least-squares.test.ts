@@ -70,7 +70,13 @@ const solve = (problem: Problem, start: readonly number[]) =>
   leastSquares(
     (b) => Float64Array.from(problem.x, (x, k) => (problem.y[k] ?? 0) - problem.model(b, x)),
     Float64Array.from(start),
-    { maxIterations: 400, tolerance: 1e-13, difference: 1e-5, typical: start.map((value) => Math.abs(value) * 1e-3) },
+    {
+      maxIterations: 400,
+      tolerance: 1e-13,
+      difference: 1e-5,
+      sides: 'both',
+      typical: start.map((value) => Math.abs(value) * 1e-3),
+    },
   );
 
 describe('certified nonlinear regression (NIST StRD)', () => {
@@ -118,6 +124,7 @@ describe('certified nonlinear regression (NIST StRD)', () => {
         maxIterations: 50,
         tolerance: 1e-14,
         difference: 1e-4,
+        sides: 'both',
         typical: [1, 1],
       },
     );
@@ -127,6 +134,7 @@ describe('certified nonlinear regression (NIST StRD)', () => {
         maxIterations: 5,
         tolerance: 1e-6,
         difference: 1e-4,
+        sides: 'both',
         typical: [1],
       }),
     ).toThrow(/finite/);
