@@ -10,19 +10,19 @@ export interface ArmMotion {
   readonly weight: number;
   readonly level: number;
   readonly radiansPerUnit: number;
-  /** Longest sub-step, s. */
-  readonly subStep: number;
   position: number;
   speed: number;
   readonly piece: Piece;
   readonly course: Course;
 }
 
-// At top speed an arm turns this far in a sub-step, rad. A sub-step spans half the lag at most, down to a tenth of that turn: a lag
-// shorter still bends the path too little to matter. Its error against a general ODE solver: test/plant/arm.test.ts.
+// The most an arm may turn in a sub-step, rad. A sub-step spans half the lag at most, down to a tenth of that turn: a lag shorter
+// still bends the path too little to matter. Its error against a general ODE solver: test/plant/arm.test.ts.
 const TURN = 0.02;
 const LEAST_TURN = 0.002;
 const SHARE_OF_LAG = 0.5;
+// No tick needs as many; a model that a fit tries out may (a thousand turns a second), and must not hold it up.
+const MOST_STEPS = 4000;
 
 /** Puts an arm at its start. */
 export function startArm(
@@ -30,14 +30,11 @@ export function startArm(
   gravity: Extract<Gravity, { kind: 'cosine' }>,
   start: { readonly position: number; readonly speed: number },
 ): ArmMotion {
-  const { topSpeed, lag } = plant.response;
-  const turnRate = topSpeed * gravity.radiansPerUnit;
   return {
     law: rigidLawOf(plant),
     weight: plant.response.hold,
     level: gravity.level,
     radiansPerUnit: gravity.radiansPerUnit,
-    subStep: Math.min(TURN / turnRate, Math.max(LEAST_TURN / turnRate, SHARE_OF_LAG * lag)),
     position: start.position,
     speed: start.speed,
     piece: newPiece(),
@@ -61,7 +58,7 @@ const MOST_EVENTS = 16;
  * @param duration s, ≥ 0
  */
 export function advanceArm(arm: ArmMotion, u: number, duration: number): void {
-  const steps = Math.max(1, Math.ceil(duration / arm.subStep));
+  const steps = stepsFor(arm, u, duration);
   for (let step = 0; step < steps; step++) {
     let left = duration / steps;
     for (let events = 0; left > 0 && events < MOST_EVENTS; events++) {
@@ -73,6 +70,17 @@ export function advanceArm(arm: ArmMotion, u: number, duration: number): void {
       else left -= advanceWithin(arm, u, left, direction, stop);
     }
   }
+}
+
+/** Sub-steps of a move, by the fastest it can get: from here at full acceleration, or at the end value of all forces together. */
+function stepsFor(arm: ArmMotion, u: number, duration: number): number {
+  const { law, speed } = arm;
+  const force = Math.abs(u) + Math.abs(arm.weight) + Math.max(law.againstForward, -law.againstBack);
+  const end = Math.max(Math.abs(speed), law.topSpeed * force);
+  const fastest = Math.min(end, Math.abs(speed) + (law.topSpeed / law.lag) * force * duration);
+  const turnRate = fastest * arm.radiansPerUnit;
+  const subStep = Math.min(TURN / turnRate, Math.max(LEAST_TURN / turnRate, SHARE_OF_LAG * law.lag));
+  return Math.min(MOST_STEPS, Math.max(1, Math.ceil(duration / subStep)));
 }
 
 /** Moves to the next event, or for `left`; returns the time used. */

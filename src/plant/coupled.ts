@@ -94,6 +94,8 @@ function forceOn(motion: CoupledMotion, side: number, y: Float64Array): number {
 }
 
 const MOST_EVENTS = 20;
+// Beyond it a coupling is as good as rigid, and should be given as such.
+const MOST_STEPS = 20_000;
 
 /**
  * Moves a coupled mechanism under a held output: classical Runge–Kutta in sub-steps, cut at every event (the gap closes or opens,
@@ -104,7 +106,7 @@ const MOST_EVENTS = 20;
  * @param duration s, ≥ 0
  */
 export function advanceCoupled(motion: CoupledMotion, u: number, duration: number): void {
-  const steps = Math.max(1, Math.ceil(duration / motion.subStep));
+  const steps = Math.min(MOST_STEPS, Math.max(1, Math.ceil(duration / motion.subStep)));
   for (let step = 0; step < steps; step++) {
     let left = duration / steps;
     for (let events = 1; left > 0; events++) left -= advanceToEvent(motion, u, left, events < MOST_EVENTS);
