@@ -48,21 +48,46 @@ export function trialLine(proposal: Proposal, profile: Profile): string {
 
 /** A whole checklist on paper: figures, boxes to tick, when to stop, what comes after. */
 export function checklistText(checklist: Checklist, profile: Profile, width: number): string {
-  const bullet = (mark: string, text: string) =>
-    wrapped(text, width - mark.length - 3).map((line, k) => `  ${k === 0 ? mark : ' '.repeat(mark.length)} ${line}`);
   return [
-    'What this trial can do, at its worst',
-    ...dangerLines(checklist, profile).flatMap((line) => wrapped(line, width - 2).map((part) => `  ${part}`)),
+    ...dangersPart(checklist, profile, width),
     '',
     'Before power',
-    ...checklist.items.flatMap(({ text }) => bullet('[ ]', text)),
+    ...checklist.items.flatMap(({ text }) => bullet('[ ]', text, width)),
     '',
-    'Disable at once if',
-    ...checklist.abort.flatMap((text) => bullet('-', text)),
+    ...abortPart(checklist, width),
     '',
-    'After',
-    ...checklist.after.flatMap((text) => bullet('-', text)),
+    ...afterPart(checklist, width),
     '',
     ...checklist.cautions.flatMap((text) => wrapped(text, width)),
   ].join('\n');
 }
+
+/** The same for a person at a terminal, up to the items, which are asked one by one. */
+export function briefingText(checklist: Checklist, profile: Profile, width: number): string {
+  return [
+    ...dangersPart(checklist, profile, width),
+    '',
+    ...abortPart(checklist, width),
+    '',
+    ...checklist.cautions.flatMap((text) => wrapped(text, width)),
+  ].join('\n');
+}
+
+const bullet = (mark: string, text: string, width: number) =>
+  wrapped(text, width - mark.length - 3).map((line, k) => `  ${k === 0 ? mark : ' '.repeat(mark.length)} ${line}`);
+
+const dangersPart = (checklist: Checklist, profile: Profile, width: number): readonly string[] => [
+  'What this trial can do, at its worst',
+  ...dangerLines(checklist, profile).flatMap((line) => wrapped(line, width - 2).map((part) => `  ${part}`)),
+];
+
+const abortPart = ({ abort }: Checklist, width: number): readonly string[] => [
+  'Disable at once if',
+  ...abort.flatMap((text) => bullet('-', text, width)),
+];
+
+/** What comes after the trial, before any hand. */
+export const afterPart = ({ after }: Checklist, width: number): readonly string[] => [
+  'After',
+  ...after.flatMap((text) => bullet('-', text, width)),
+];

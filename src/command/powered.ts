@@ -2,7 +2,7 @@ import type { Profile } from '../mechanism/profile.ts';
 import { profileDigest } from '../profile/store.ts';
 import { type GateRequest, openGate } from '../safety/gate.ts';
 import type { Checklist, GateRefusal, Signature } from '../safety/hazard.ts';
-import { checklistText, trialLine } from './checklist-text.ts';
+import { afterPart, briefingText, trialLine } from './checklist-text.ts';
 import type { CommandContext } from './command.ts';
 import { type Failure, refused } from './failure.ts';
 import { heading, spelt, wrapped } from './page.ts';
@@ -56,16 +56,17 @@ export function poweredAdmission(
     const say = (text: string) => edge.err(`${spelt(text, context.style)}\n`);
     say(heading(`Trial ${trial}: checklist before power`, context.width, context.style));
     say(wrapped(trialLine(proposal, profile), context.width).join('\n'));
-    say(`\n${checklistText(dangers.checklist, profile, context.width)}\n`);
+    say(`\n${briefingText(dangers.checklist, profile, context.width)}\n`);
     const answer = await ticked(dangers.checklist, lastName, context);
     if (answer === null || edge.interrupted.aborted) return { open: 'interrupted' };
     lastName = answer.name;
     const { outputCap, profileDigest } = request;
     const signature = { ...answer, at: edge.now(), outputCap, profileDigest };
     const opening = openGate({ ...request, signature, now: edge.now() });
-    return opening.open
-      ? { open: true, permit: opening.permit }
-      : { open: false, failure: refusal(trial, opening.reasons) };
+    if (!opening.open) return { open: false, failure: refusal(trial, opening.reasons) };
+    say(`\nSigned by ${signature.name}. Trial ${trial} runs now.`);
+    say(`${afterPart(dangers.checklist, context.width).join('\n')}\n`);
+    return { open: true, permit: opening.permit };
   };
 }
 
@@ -79,7 +80,10 @@ async function ticked(
   context.edge.err('Tick each item with y; anything else refuses the trial.\n');
   const ids: string[] = [];
   for (const [k, item] of items.entries()) {
-    const answer = await ask(`[${k + 1}/${items.length}] ${item.text} y? `);
+    const lines = wrapped(`[${k + 1}/${items.length}] ${item.text} y?`, context.width - 3);
+    // The question itself is one line, so that the line editor can keep it.
+    for (const line of lines.slice(0, -1)) context.edge.err(`${spelt(line, context.style)}\n`);
+    const answer = await ask(`${lines.at(-1)} `);
     if (answer === null) return null;
     if (!/^\s*y(es)?\s*$/i.test(answer)) return { name: lastName, ticked: ids };
     ids.push(item.id);
