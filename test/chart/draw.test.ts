@@ -115,6 +115,16 @@ describe('truth', () => {
     expect(rows.find(({ label }) => label === '1.0')?.cells).toMatch(/\S/);
   });
 
+  test('two spikes in one column, one up and one down, are both drawn', () => {
+    const value = Array<number>(5000).fill(0);
+    value[3217] = 1;
+    value[3220] = -1;
+    const chart = spec([line('measured', seconds(5000, 0.001), value)], { width: 50, range: [-1, 1] });
+    const rows = plot(drawChart(chart, MONO), '┤');
+    expect(rows[0]?.cells).toMatch(/\S/);
+    expect(rows.at(-1)?.cells).toMatch(/\S/);
+  });
+
   test('a swing faster than the columns shows both its extremes', () => {
     const value = seconds(6000, 0.001).map((t) => Math.sin(2 * Math.PI * 100 * t));
     const rows = plot(drawChart(spec([line('measured', seconds(6000, 0.001), value)], { range: [-1, 1] }), MONO), '┤');
@@ -182,6 +192,17 @@ describe('cursor and stacking', () => {
       width: 80,
     });
     expect(drawChart(chart, PLAIN).join('\n')).toMatch(/at 0\.25 s {3}measured 0\.25\d* {3}setpoint 1\.0+ m/);
+  });
+
+  test('stacked charts share one span, also where one log is shorter', () => {
+    const flat = (role: Line['role'], count: number) => line(role, seconds(count, 0.02), Array<number>(count).fill(1));
+    const half = spec([flat('setpoint', 51)], { height: 10, range: [0, 2] });
+    const whole = spec([flat('other', 101)], { height: 10, range: [0, 2] });
+    for (const [upper, lower] of [[half, whole] as const, [whole, half] as const]) {
+      const rows = stackCharts(upper, lower, PLAIN).filter((row) => row.includes('|'));
+      const drawn = (glyph: string) => rows.join('\n').split(glyph).length - 1;
+      expect(drawn('=') / drawn('o')).toBeCloseTo(0.5, 1);
+    }
   });
 
   test('stacked charts show a moment in the same column', () => {
