@@ -6,6 +6,8 @@ export interface Edge {
   readonly err: (text: string) => void;
   /** One line from the person at the keyboard, without its end; null at the end of input or on Ctrl-C. */
   readonly ask: (question: string) => Promise<string | null>;
+  /** All of standard input, for a log that is piped in. */
+  readonly input: () => Promise<Uint8Array>;
   readonly env: Environment;
   readonly cwd: string;
   readonly terminal: TerminalFacts;

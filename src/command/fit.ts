@@ -1,11 +1,11 @@
-import { basename, resolve } from 'node:path';
+import { basename } from 'node:path';
 import { drawChart } from '../chart/draw.ts';
 import type { ChartSpec, Line } from '../chart/spec.ts';
 import { driveOf } from '../learn/evidence.ts';
 import { learn } from '../learn/learn.ts';
 import type { LearntModel, TrialEvidence } from '../learn/learnt.ts';
 import { answersTo } from '../learn/output-error.ts';
-import { type LogReading, readLog } from '../log/read.ts';
+import type { LogReading } from '../log/read.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
@@ -13,6 +13,7 @@ import { modelDocument } from './documents.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { addLogOptions, columnsText, type LogOptions, readOptionsOf } from './log-options.ts';
 import { learntLines } from './model-text.ts';
+import { openLog } from './open-log.ts';
 import { hanging, spelt, wrapped } from './page.ts';
 import { plainProfile, unitlessText } from './plain-profile.ts';
 import { withProgress } from './progress.ts';
@@ -51,7 +52,7 @@ async function fitLogs(files: readonly string[], options: FitOptions, context: C
   const given = options.profile === undefined ? null : await profileNamed(options.profile, context);
   const logs: LogReading[] = [];
   for (const file of files) {
-    logs.push(await readLog(resolve(context.edge.cwd, file), readOptionsOf(options, given, 'optional')));
+    logs.push(await openLog(file, readOptionsOf(options, given, 'optional'), context));
   }
   const [first] = logs;
   if (!first) throw new RangeError('fit needs a log');

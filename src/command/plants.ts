@@ -1,12 +1,12 @@
-import { resolve } from 'node:path';
 import { learn } from '../learn/learn.ts';
-import { readLog, readLogBytes } from '../log/read.ts';
+import { readLogBytes } from '../log/read.ts';
 import { plantWith } from '../mechanism/plant-of.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { readingOf, simulatedMechanismOf } from '../trial/simulate.ts';
 import type { CommandContext } from './command.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { readOptionsOf } from './log-options.ts';
+import { openLog } from './open-log.ts';
 import { poweredCommand, simulatedCommand } from './outside-plant.ts';
 import type { TrialPlant } from './run-trials.ts';
 import { simulatedPlant } from './sim-plant.ts';
@@ -53,7 +53,7 @@ export async function fittedPlant(
   seed: number,
   context: CommandContext,
 ): Promise<TrialPlant> {
-  const reading = await readLog(resolve(context.edge.cwd, file), readOptionsOf({}, profile, 'optional'));
+  const reading = await openLog(file, readOptionsOf({}, profile, 'optional'), context);
   const evidence = { samples: reading.samples, gains: null, outputCap: profile.limits.outputCap, move: null };
   const learnt = learn({ profile, trials: [evidence], draws: 16, seed });
   for (const warning of learnt.warnings) context.edge.err(`${file}: ${warning}\n`);

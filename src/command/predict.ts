@@ -1,4 +1,3 @@
-import { resolve } from 'node:path';
 import { drawChart } from '../chart/draw.ts';
 import { promiseChart } from '../chart/trial-chart.ts';
 import { rehearsalDuration } from '../coach/aim.ts';
@@ -7,7 +6,6 @@ import { learn } from '../learn/learn.ts';
 import type { LearntModel } from '../learn/learnt.ts';
 import { predict } from '../learn/predict.ts';
 import { priorOf } from '../learn/prior.ts';
-import { readLog } from '../log/read.ts';
 import type { Margins } from '../margin/margins.ts';
 import { marginsOf, worstMargins } from '../margin/of-response.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
@@ -22,6 +20,7 @@ import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
 import { capText, gainsLine } from './gains-text.ts';
 import { addLogOptions, type LogOptions, readOptionsOf } from './log-options.ts';
+import { openLog } from './open-log.ts';
 import { hanging, heading, spelt } from './page.ts';
 import { knownResponses } from './planned-trial.ts';
 import { withProgress } from './progress.ts';
@@ -108,7 +107,7 @@ async function learntFrom(
   context: CommandContext,
 ): Promise<LearntModel> {
   const logs = await Promise.all(
-    files.map((file) => readLog(resolve(context.edge.cwd, file), readOptionsOf(options, profile, 'optional'))),
+    files.map((file) => openLog(file, readOptionsOf(options, profile, 'optional'), context)),
   );
   const trials = logs.map(({ samples }) => ({ samples, gains: null, outputCap: profile.limits.outputCap, move: null }));
   const learnt = await withProgress('Learning from the logs', context.edge, () =>

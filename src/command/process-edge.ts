@@ -27,6 +27,11 @@ export function processEdge(): Edge {
     out: (text) => process.stdout.write(text),
     err: (text) => process.stderr.write(text),
     ask: (question) => askOnTerminal(question, stop),
+    input: async () => {
+      const chunks: Buffer[] = [];
+      for await (const chunk of process.stdin) chunks.push(chunk);
+      return Buffer.concat(chunks);
+    },
     env: process.env,
     cwd: process.cwd(),
     terminal: {

@@ -1,6 +1,4 @@
-import { resolve } from 'node:path';
 import type { LogReading } from '../log/read.ts';
-import { readLog } from '../log/read.ts';
 import { responseOf } from '../mechanism/plant-of.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
@@ -12,6 +10,7 @@ import { EXIT, type ExitCode } from './edge.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { addLogOptions, columnsDocument, type LogOptions, readOptionsOf } from './log-options.ts';
 import { wholeNumber } from './numbers.ts';
+import { openLog } from './open-log.ts';
 import { spelt } from './page.ts';
 import { plainProfile, unitlessText } from './plain-profile.ts';
 import { type ReadMove, type ReadPage, readText } from './read-page.ts';
@@ -34,7 +33,7 @@ export const definition: CommandDefinition = {
   define: (command, runner) => {
     addLogOptions(
       command
-        .argument('<log>', 'a trial log: CSV of any kind, JSON Lines, plain or gzip')
+        .argument('<log>', 'a trial log: CSV of any kind, JSON Lines, plain or gzip; - for standard input')
         .option('--profile <profile>', 'the mechanism it was logged on: its units, target and limits')
         .option('--move <n>', 'show this move only, of a log with many', wholeNumber),
     ).action((file: string, options: ReadCommandOptions) => runner((context) => read(file, options, context)));
@@ -46,7 +45,7 @@ type Basis = Pick<ReadPage, 'profile' | 'own' | 'say' | 'assumed'>;
 
 async function read(file: string, options: ReadCommandOptions, context: CommandContext): Promise<ExitCode> {
   const given = options.profile === undefined ? null : await profileNamed(options.profile, context);
-  const log = await readLog(resolve(context.edge.cwd, file), readOptionsOf(options, given, 'needed'));
+  const log = await openLog(file, readOptionsOf(options, given, 'needed'), context);
   if (log.moves.length === 0) {
     throw unusable(
       'no move was found in it: the setpoint never changes, and the reading starts on it.',

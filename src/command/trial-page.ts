@@ -54,7 +54,7 @@ export function readingText(record: TrialRecord, reading: TrialReading, page: Tr
     ...figureLines(reading.figures, profile, record.stage === 'ready' ? 'nothing' : 'target'),
     '',
     ...verdictLines(reading, width),
-    bandLine(reading, width),
+    bandLine(reading, record.stage === 'ready' ? '' : ' This move meets the target.', width),
   ].join('\n');
 }
 
@@ -63,14 +63,14 @@ function verdictLines(reading: TrialReading, width: number): readonly string[] {
   return reading.verdicts.map(({ is, because }, k) => hanging(k === 0 ? 'Verdict' : '', `${is}: ${because}`, width));
 }
 
-function bandLine({ inBand, meets }: TrialReading, width: number): string {
+function bandLine({ inBand, meets }: TrialReading, praise: string, width: number): string {
   const kept =
     inBand === null
       ? 'No band was promised.'
       : inBand
         ? 'It kept to the band it was promised.'
         : 'It left the band it was promised: that is news, and the model is trusted less.';
-  return hanging('Band', `${kept} ${meets ? 'This move meets the target.' : ''}`.trim(), width);
+  return hanging('Band', `${kept}${meets ? praise : ''}`, width);
 }
 
 /** How the run ended, the gains to hold, and how sure they are. */

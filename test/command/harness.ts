@@ -17,6 +17,8 @@ export interface World {
   readonly env?: Environment;
   /** A person at the terminal: answers each question, or null for Ctrl-C. */
   readonly answer?: ((question: string) => string | null) | undefined;
+  /** What is piped in. */
+  readonly piped?: string;
   readonly columns?: number;
   readonly now?: () => number;
   readonly interrupted?: AbortSignal;
@@ -43,6 +45,7 @@ export async function holdfast(words: readonly string[], world: World): Promise<
       err += `${answer}\n`;
       return answer;
     },
+    input: async () => new TextEncoder().encode(world.piped ?? ''),
     env: world.env ?? { LANG: 'C.UTF-8' },
     cwd: world.cwd,
     terminal: {

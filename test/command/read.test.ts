@@ -65,6 +65,12 @@ describe('a log that reads', () => {
     expect(moves[0]?.figures.overshoot).toBeCloseTo(16.3, 1);
   });
 
+  test('a log can be piped in', async () => {
+    const { code, document } = await holdfastJson(['read', '-'], { cwd, piped: good });
+    expect(code).toBe(0);
+    expect(readResult.parse(document)).toMatchObject({ file: 'standard input', rows: 401 });
+  });
+
   test('a log of many moves is listed, and each can be drawn', async () => {
     const many = Array.from({ length: 7 }, (_, move) =>
       ringing
