@@ -1,16 +1,28 @@
 import { rebuildOutput } from '../controller/rebuild.ts';
 import { fullOutput } from '../controller/settings.ts';
 import { gravityOf } from '../mechanism/plant-of.ts';
-import type { Move, Profile } from '../mechanism/profile.ts';
+import type { Profile } from '../mechanism/profile.ts';
+import type { Start } from '../plant/motion.ts';
+import { type Samples, sliceSamples } from '../record/samples.ts';
 import type { TrialEvidence } from './learnt.ts';
+import { filled, informationOf, smallestStep, unwrapped } from './readings.ts';
 
 /** One trial made ready for the fit: what drove it, as fractions of full output, and what was measured, unwrapped. */
 export interface Drive {
+  readonly quantity: Profile['quantity'];
   readonly time: Float64Array;
   /** Fraction of full output at nominal supply. */
   readonly output: Float64Array;
   readonly measured: Float64Array;
-  readonly start: { readonly position: number; readonly speed: number };
+  /** What each row's reading is worth, 0 to 1; nil where there was none. */
+  readonly information: Float64Array;
+  readonly start: Start;
+  /** One sigma of the start's position (of a speed log, its speed); 0 = it is known. */
+  readonly startError: number;
+  /** Deviation of a reading that the sensor's step and noise explain, unit of `measured`. */
+  readonly floor: number;
+  /** Rows without a number for the reading or the output. */
+  readonly missing: number;
   /** True when the log had no output and it was rebuilt from the gains. */
   readonly rebuilt: boolean;
   /** True when the logged supply was used, so that the plant must not sag by itself. */
@@ -18,39 +30,81 @@ export interface Drive {
 }
 
 /** Why a trial can teach nothing. */
-export type Unusable = 'too short' | 'no output and no gains' | 'not finite' | 'never driven' | 'never moved';
+export type Unusable =
+  | 'too short'
+  | 'time goes back'
+  | 'no output and no gains'
+  | 'not finite'
+  | 'never driven'
+  | 'never moved';
+
+const LEAST_ROWS = 8;
+/** Share of rows that may lack a number before a trial is not believed. */
+const MOST_MISSING = 0.2;
 
 /** Makes a trial ready for the fit, or says why it cannot be used. */
 export function driveOf(evidence: TrialEvidence, profile: Profile): Drive | Unusable {
-  const { samples } = evidence;
-  const rows = samples.time.length;
-  if (rows < 8) return 'too short';
-  const measured = unwrapped(samples.measured, profile.continuous);
-  if (!allFinite(samples.time) || !allFinite(measured)) return 'not finite';
-  const sent = samples.output ?? rebuiltOutput(evidence, profile);
-  if (sent === null) return 'no output and no gains';
-  if (!allFinite(sent)) return 'not finite';
-  const full = fullOutput(profile.controller);
-  const nominal = profile.supply?.openCircuit ?? null;
-  const supply = samples.supply;
-  const supplied = supply !== null && nominal !== null && allFinite(supply);
-  const output = sent.map(
-    (value, row) => (value / full) * (supplied && supply && nominal ? (supply[row] ?? nominal) / nominal : 1),
-  );
+  const samples = whileEnabled(evidence.samples);
+  const { time } = samples;
+  if (time.length < LEAST_ROWS) return 'too short';
+  if (!increases(time)) return 'time goes back';
+  const read = filled(samples.measured);
+  const sent = samples.output === null ? null : filled(samples.output);
+  const mostMissing = MOST_MISSING * time.length;
+  if (read === null || read.missing > mostMissing) return 'not finite';
+  const rebuilt = sent === null;
+  const output = sent?.values ?? rebuiltOutput(evidence, samples, read.values, profile);
+  if (output === null) return 'no output and no gains';
+  if ((sent?.missing ?? 0) > mostMissing || !output.every(Number.isFinite)) return 'not finite';
   if (output.every((value) => value === 0)) return 'never driven';
-  if (measured.every((value) => value === measured[0])) return 'never moved';
+  if (read.values.every((value) => value === read.values[0])) return 'never moved';
+
+  const quantity = evidence.quantity ?? profile.quantity;
+  const measured = quantity === 'position' ? unwrapped(read.values, profile.continuous) : read.values;
+  const { factors, supplied } = supplyFactors(samples, profile);
+  const full = fullOutput(profile.controller);
+  const { step, floor } = sensorFloor(measured, quantity, profile);
+  const start = startOf(time, measured, quantity, Math.max(step, 3 * floor), evidence);
   return {
-    time: samples.time,
-    output,
+    quantity,
+    time,
+    output: output.map((value, row) => (value / full) * (factors?.[row] ?? 1)),
     measured,
-    start: startOf(samples.time, measured, profile),
-    rebuilt: samples.output === null,
+    information: informationOf(samples.measured, measured, Math.max(step, floor)),
+    start,
+    startError: quantity === 'speed' && start.speed === 0 ? 0 : floor,
+    floor,
+    missing: read.missing + (sent?.missing ?? 0),
+    rebuilt,
     supplied,
   };
 }
 
-function rebuiltOutput(evidence: TrialEvidence, profile: Profile): Float64Array | null {
-  const { gains, samples } = evidence;
+/** The longest stretch in which the machine was enabled; all of it when the log does not say. */
+function whileEnabled(samples: Samples): Samples {
+  const { enabled, time } = samples;
+  if (enabled === null) return samples;
+  let longest = { start: 0, end: 0 };
+  for (let row = 0, start = 0; row <= time.length; row++) {
+    if (row < time.length && (enabled[row] ?? 1) > 0.5) continue;
+    if (row - start > longest.end - longest.start) longest = { start, end: row };
+    start = row + 1;
+  }
+  return sliceSamples(samples, longest.start, longest.end);
+}
+
+function increases(time: Float64Array): boolean {
+  for (let row = 1; row < time.length; row++) if (!((time[row] ?? 0) >= (time[row - 1] ?? 0))) return false;
+  return Number.isFinite(time[0]) && Number.isFinite(time.at(-1));
+}
+
+function rebuiltOutput(
+  evidence: TrialEvidence,
+  samples: Samples,
+  measured: Float64Array,
+  profile: Profile,
+): Float64Array | null {
+  const { gains } = evidence;
   if (gains === null) return null;
   const loop = {
     settings: profile.controller,
@@ -60,41 +114,67 @@ function rebuiltOutput(evidence: TrialEvidence, profile: Profile): Float64Array 
     holdShape: gravityOf(profile),
     outputCap: evidence.outputCap,
   };
-  return rebuildOutput(loop, samples.time, samples.setpoint, samples.measured).output;
+  const { time, setpoint } = samples;
+  const speed = gains.pace !== 0 && profile.quantity === 'position' ? shapedSpeed(time, setpoint) : null;
+  return rebuildOutput(loop, time, setpoint, measured, speed).output;
 }
 
-/** Readings of a wrapping sensor as one continuous course. */
-export function unwrapped(measured: Float64Array, width: number | null): Float64Array {
-  if (width === null) return measured;
-  const course = Float64Array.from(measured);
-  let turns = 0;
-  for (let row = 1; row < course.length; row++) {
-    const jump = (measured[row] ?? 0) - (measured[row - 1] ?? 0);
-    turns -= Math.round(jump / width);
-    course[row] = (measured[row] ?? 0) + turns * width;
+/** Speed of a setpoint that moves gradually; nil across a step. */
+function shapedSpeed(time: Float64Array, setpoint: Float64Array): Float64Array {
+  const slope = (row: number): number => {
+    const dt = (time[row] ?? 0) - (time[row - 1] ?? 0);
+    return row > 0 && dt > 0 ? ((setpoint[row] ?? 0) - (setpoint[row - 1] ?? 0)) / dt : 0;
+  };
+  return time.map((_, row) => {
+    const before = slope(row);
+    const after = row + 1 < time.length ? slope(row + 1) : 0;
+    return before === 0 || after === 0 ? 0 : 0.5 * (before + after);
+  });
+}
+
+/** Logged supply over the nominal one, row by row; output in duty pulls as hard as the supply is high. */
+function supplyFactors(
+  { supply }: Samples,
+  profile: Profile,
+): { readonly factors: Float64Array | null; readonly supplied: boolean } {
+  const nominal = profile.supply?.openCircuit ?? profile.motor?.nominalVoltage ?? null;
+  const read = supply === null || nominal === null ? null : filled(supply);
+  if (read === null || nominal === null || read.missing > MOST_MISSING * read.values.length) {
+    return { factors: null, supplied: false };
   }
-  return course;
+  return { factors: read.values.map((value) => value / nominal), supplied: true };
 }
 
-/** Where and how fast it was when the record begins: at rest unless the first samples say otherwise. */
-function startOf(time: Float64Array, measured: Float64Array, profile: Profile): Drive['start'] {
-  const first = measured[0] ?? 0;
-  if (profile.quantity === 'speed') return { position: 0, speed: first };
-  const noise = Math.max(profile.sensor?.resolution ?? 0, 3 * (profile.sensor?.noise ?? 0));
-  const step = (measured[1] ?? first) - first;
-  const dt = (time[1] ?? 0) - (time[0] ?? 0);
-  const moving = Math.abs(step) > 2 * noise && dt > 0 && (time[0] ?? 0) !== 0;
-  return { position: first, speed: moving ? step / dt : 0 };
+/** What the sensor alone explains. A speed logged of a position mechanism has no data sheet: its own smallest step is taken. */
+function sensorFloor(
+  measured: Float64Array,
+  quantity: Profile['quantity'],
+  profile: Profile,
+): { readonly step: number; readonly floor: number } {
+  const sensor = quantity === profile.quantity ? profile.sensor : null;
+  const step = sensor?.resolution ?? smallestStep(measured);
+  return { step, floor: Math.hypot(step / Math.sqrt(12), sensor?.noise ?? 0) };
 }
 
-/** The move a trial made, where it was told or its setpoint shows it. */
-export function moveOf(evidence: TrialEvidence): Move {
-  if (evidence.move !== null) return evidence.move;
-  const { setpoint, measured } = evidence.samples;
-  return { from: measured[0] ?? 0, to: setpoint.at(-1) ?? 0 };
-}
-
-function allFinite(values: Float64Array): boolean {
-  for (const value of values) if (!Number.isFinite(value)) return false;
-  return true;
+/**
+ * Where and how fast it was when the record begins. A trial of a known move began at rest; of other logs the first three
+ * readings tell, to the second order, so that setting off from rest does not pass for motion.
+ */
+function startOf(
+  time: Float64Array,
+  measured: Float64Array,
+  quantity: Profile['quantity'],
+  noise: number,
+  evidence: TrialEvidence,
+): Start {
+  const [first = 0, second = 0, third = 0] = measured;
+  if (quantity === 'speed') {
+    // A reading that noise explains is of a mechanism at rest: friction must not be told to slow it.
+    return { position: evidence.move?.from ?? 0, speed: Math.abs(first) > noise ? first : 0 };
+  }
+  const dt = ((time[2] ?? 0) - (time[0] ?? 0)) / 2;
+  const isTrial = evidence.move !== null && evidence.gains !== null;
+  const moved = (-3 * first + 4 * second - third) / 2;
+  const isMoving = !isTrial && dt > 0 && Math.abs(moved) > 4 * noise;
+  return { position: first, speed: isMoving ? moved / dt : 0 };
 }

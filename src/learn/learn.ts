@@ -1,18 +1,19 @@
-import { CholeskyDecomposition, Matrix } from 'ml-matrix';
-import { MODEL_PARAMETERS, type ModelParameter, type ResponseModel } from '../plant/response-model.ts';
-import type { Interval } from '../record/band.ts';
-import { normalNumbers } from '../trial/chance.ts';
+import { MODEL_PARAMETERS, type ModelParameter } from '../plant/response-model.ts';
+import { alignedFit } from './alignment.ts';
 import { type Drive, driveOf, type Unusable } from './evidence.ts';
-import { type Fitted, fitModel } from './fit.ts';
+import { intervalsOf } from './intervals.ts';
 import type { LearnRequest, LearntModel, Prior } from './learnt.ts';
-import { decode, PARAMETERS } from './parameters.ts';
+import { fitPercent } from './output-error.ts';
+import { coordinatesOf, type FitParameter, placeOf } from './parameters.ts';
+import { drawsFrom, type Posterior, posteriorOf } from './posterior.ts';
 import { drawPrior, priorOf } from './prior.ts';
 
-/** Draws from which the 95 % intervals are read; more than are handed out. */
-const INTERVAL_DRAWS = 400;
+/** Draws of a prior that its intervals are read from. */
+const PRIOR_DRAWS = 400;
 
-/** A fit under this explains the logs too badly to be searched on, %. */
+/** A fit under this explains the logs too badly to be searched on, %; unless all that is left is the sensor's own. */
 const LEAST_FIT = 70;
+const SENSOR_ALONE = 2;
 
 /** An interval wider than this share of its prior's has learnt nothing. */
 const UNLEARNT = 0.85;
@@ -32,25 +33,37 @@ export function learn(request: LearnRequest): LearntModel {
     else drives.push(drive);
   });
   if (drives.length === 0) return unlearntModel(request, prior, warnings);
-  const { fitted, rowShift } = fitWithRows(drives, request, prior);
+  const { fitted: first, rowShift } = alignedFit({
+    drives,
+    profile,
+    coordinates: coordinatesOf(prior),
+    from: request.from ?? null,
+  });
+  const posterior = posteriorOf(first, request.seed);
+  const { fitted } = posterior;
+  const fit = fitPercent(drives, fitted.problem.answers.of(fitted.response));
   if (rowShift > 0) {
     warnings.push(
       `The output in a row acted on the interval that ends there: it was moved one row to line up with the motion.`,
     );
   }
-  if (drives.some((drive) => drive.rebuilt)) warnings.push('The log has no output; it was rebuilt from the gains.');
-  const draws = posteriorDraws(fitted, INTERVAL_DRAWS, request.seed);
-  const usable = fitted.fit >= LEAST_FIT;
-  if (!usable) warnings.push(`The model explains only ${fitted.fit.toFixed(0)} % of the motion: it is not relied on.`);
+  const missing = drives.reduce((sum, drive) => sum + drive.missing, 0);
+  if (missing > 0)
+    warnings.push(`${missing} ${missing === 1 ? 'row holds' : 'rows hold'} no number and did not count.`);
+  const outputRebuilt = drives.some((drive) => drive.rebuilt);
+  if (outputRebuilt) warnings.push('The log has no output; it was rebuilt from the gains.');
+  const residual = fitted.weighing.sigma[0] ?? 0;
+  const usable = fit >= LEAST_FIT || residual <= SENSOR_ALONE * (drives[0]?.floor ?? 0);
+  if (!usable) warnings.push(`The model explains only ${fit.toFixed(0)} % of the motion: it is not relied on.`);
   return {
     response: fitted.response,
-    intervals: intervalsOf(fitted.response, draws),
-    draws: draws.slice(0, request.draws),
-    fit: fitted.fit,
-    residual: fitted.residual,
+    intervals: intervalsOf(fitted.response, posterior.models, posterior.shares),
+    draws: drawsFrom(posterior, request.draws),
+    fit,
+    residual,
     rowShift,
-    outputRebuilt: drives.some((drive) => drive.rebuilt),
-    unlearnt: unlearntOf(fitted),
+    outputRebuilt,
+    unlearnt: unlearntOf(posterior),
     usable,
     warnings,
   };
@@ -58,79 +71,37 @@ export function learn(request: LearnRequest): LearntModel {
 
 const REASONS: Readonly<Record<Unusable, string>> = {
   'too short': 'it has fewer than 8 samples',
+  'time goes back': 'its time goes back',
   'no output and no gains': 'it has no output, and the gains to rebuild it are not known',
-  'not finite': 'it holds values that are not numbers',
+  'not finite': 'too many of its values are not numbers',
   'never driven': 'its output is zero throughout',
   'never moved': 'its reading never changes',
 };
 
-/** How much better the shifted rows must explain the motion before they are believed. */
-const SHIFT_GAIN = 0.6;
-
-function fitWithRows(
-  drives: readonly Drive[],
-  request: LearnRequest,
-  prior: Prior,
-): { fitted: Fitted; rowShift: number } {
-  const { profile } = request;
-  const plain = fitModel(drives, profile, prior, 0);
-  // Only a dead time pressed against zero can hide a row that acted earlier, and only a fit that leaves more than the sensor's
-  // own steps has anything to gain; a rebuilt output has no row to be wrong.
-  const pressed = plain.response.delay < 0.3 * profile.controller.period && drives.every((drive) => !drive.rebuilt);
-  if (!pressed || plain.residual < 2 * plain.floor) return { fitted: plain, rowShift: 0 };
-  const moved = fitModel(drives, profile, prior, 1);
-  return moved.misfit < SHIFT_GAIN * plain.misfit ? { fitted: moved, rowShift: 1 } : { fitted: plain, rowShift: 0 };
-}
-
-function posteriorDraws(fitted: Fitted, count: number, seed: number): readonly ResponseModel[] {
-  const { free, covariance } = fitted;
-  const jitter = Matrix.eye(free.length).mul(1e-12);
-  const lower = new CholeskyDecomposition(covariance.clone().add(jitter)).lowerTriangularMatrix;
-  const chance = normalNumbers(seed, count * free.length);
-  return Array.from({ length: count }, (_, draw) => {
-    const at = fitted.at.slice();
-    free.forEach((j, row) => {
-      let sum = 0;
-      for (let k = 0; k <= row; k++) sum += lower.get(row, k) * (chance[draw * free.length + k] ?? 0);
-      at[j] = (at[j] ?? 0) + sum;
+/** What the trials left about as wide as the prior had it. */
+function unlearntOf({ fitted, places, shares }: Posterior): readonly ModelParameter[] {
+  const { free, coordinates } = fitted.problem;
+  const isWide = (name: FitParameter): boolean => {
+    const j = placeOf(name);
+    if (!free.includes(j)) return false;
+    let mean = 0;
+    places.forEach((place, at) => {
+      mean += (shares[at] ?? 0) * (place[j] ?? 0);
     });
-    return decode(at, fitted.delayScale);
-  });
-}
-
-function intervalsOf(response: ResponseModel, draws: readonly ResponseModel[]): Record<ModelParameter, Interval> {
-  const interval = (name: ModelParameter): Interval => {
-    const values = draws.map((draw) => draw[name]).sort((a, b) => a - b);
-    const at = (share: number) =>
-      values[Math.min(values.length - 1, Math.max(0, Math.round(share * (values.length - 1))))] ?? response[name];
-    const best = response[name];
-    return { best, low: Math.min(best, at(0.025)), high: Math.max(best, at(0.975)) };
+    let variance = 0;
+    places.forEach((place, at) => {
+      variance += (shares[at] ?? 0) * ((place[j] ?? 0) - mean) ** 2;
+    });
+    return Math.sqrt(variance) > UNLEARNT * (coordinates.deviations[j] ?? 1);
   };
-  return {
-    topSpeed: interval('topSpeed'),
-    lag: interval('lag'),
-    drag: interval('drag'),
-    breakaway: interval('breakaway'),
-    hold: interval('hold'),
-    delay: interval('delay'),
-  };
-}
-
-function unlearntOf(fitted: Fitted): readonly ModelParameter[] {
-  const { free, covariance, deviations } = fitted;
-  const wide = (name: (typeof PARAMETERS)[number]): boolean => {
-    const j = PARAMETERS.indexOf(name);
-    const k = free.indexOf(j);
-    return k >= 0 && Math.sqrt(covariance.get(k, k)) > UNLEARNT * (deviations[j] ?? 1);
-  };
-  return MODEL_PARAMETERS.filter((name) => wide(name === 'breakaway' ? 'excess' : name));
+  return MODEL_PARAMETERS.filter((name) => isWide(name === 'breakaway' ? 'excess' : name));
 }
 
 function unlearntModel(request: LearnRequest, prior: Prior, warnings: readonly string[]): LearntModel {
-  const draws = drawPrior(prior, INTERVAL_DRAWS, request.seed);
+  const draws = drawPrior(prior, Math.max(PRIOR_DRAWS, request.draws), request.seed);
   return {
     response: prior.response,
-    intervals: intervalsOf(prior.response, draws),
+    intervals: intervalsOf(prior.response, draws, new Float64Array(draws.length).fill(1 / draws.length)),
     draws: draws.slice(0, request.draws),
     fit: null,
     residual: 0,

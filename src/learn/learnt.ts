@@ -13,6 +13,8 @@ export interface TrialEvidence {
   readonly outputCap: number;
   /** Null when unknown: taken from the setpoint column. */
   readonly move: Move | null;
+  /** What the measured column is, where it is not the profile's quantity: the speed of a position mechanism, in its unit a second. */
+  readonly quantity?: Profile['quantity'] | undefined;
 }
 
 export interface LearnRequest {
@@ -22,6 +24,8 @@ export interface LearnRequest {
   readonly trials: readonly TrialEvidence[];
   /** A prior that replaces the nameplate's, for example after a mechanical change. */
   readonly prior?: Prior | undefined;
+  /** What earlier trials of the same mechanism taught: where the fit starts from, which makes it quicker. */
+  readonly from?: Pick<LearntModel, 'response' | 'rowShift'> | undefined;
   /** How many posterior draws; 64 is usual. */
   readonly draws: number;
   readonly seed: number;

@@ -11,24 +11,27 @@ export interface Answers {
 }
 
 /**
- * Prepares the answers of response models to trials.
+ * Prepares the answers of response models to trials: the mechanism driven by the logged output, never corrected by a reading.
  *
  * @param rowShift rows by which the logged output is moved earlier: 1 when the output of a row acted on the interval that
  *                 ends there
  */
 export function answersTo(drives: readonly Drive[], profile: Profile, rowShift: number): Answers {
-  const columns = drives.map((drive) => new Float64Array(drive.time.length));
-  const outputs = drives.map((drive) => shifted(drive.output, rowShift));
   const sensorDelay = profile.sensor?.delay ?? 0;
   const nameplate = plantWith(profile, NEUTRAL);
+  const prepared = drives.map((drive) => ({
+    drive,
+    bounds: boundsFor(nameplate, drive),
+    output: shifted(drive.output, rowShift),
+    column: new Float64Array(drive.time.length),
+  }));
+  const columns = prepared.map(({ column }) => column);
   return {
     of: (response) => {
-      drives.forEach((drive, index) => {
-        const column = columns[index];
-        const output = outputs[index];
-        if (!column || !output) return;
-        respondInto(column, plantFor(nameplate, response, drive, sensorDelay), drive.start, drive.time, output);
-      });
+      const seen = sensorDelay > 0 ? { ...response, delay: response.delay + sensorDelay } : response;
+      for (const { drive, bounds, output, column } of prepared) {
+        respondInto(column, { ...bounds, response: seen }, drive.start, drive.time, output);
+      }
       return columns;
     },
   };
@@ -45,11 +48,12 @@ const NEUTRAL: ResponseModel = {
   delay: 0,
 };
 
-/** Rigid, with the profile's bounds; dead time includes the sensor's, which a log cannot tell apart. */
-function plantFor(nameplate: PlantModel, response: ResponseModel, drive: Drive, sensorDelay: number): PlantModel {
+/** Rigid, with the profile's bounds: what a log cannot tell from lag and dead time is not in the model. */
+function boundsFor(nameplate: PlantModel, drive: Drive): PlantModel {
   return {
     ...nameplate,
-    response: sensorDelay > 0 ? { ...response, delay: response.delay + sensorDelay } : response,
+    quantity: drive.quantity,
+    stops: drive.quantity === 'position' ? nameplate.stops : { min: null, max: null },
     coupling: null,
     sag: drive.supplied ? 0 : nameplate.sag,
   };
@@ -61,19 +65,18 @@ function shifted(output: Float64Array, rows: number): Float64Array {
   return output.map((_, row) => output[Math.min(last, row + rows)] ?? 0);
 }
 
-/** 100·(1 − ‖y − ŷ‖ / ‖y − mean y‖) over all trials; design's model and the data's README. */
+/** 100·(1 − ‖y − ŷ‖ / ‖y − mean y‖) over all trials, rows without a reading left out; design's model and the data's README. */
 export function fitPercent(drives: readonly Drive[], answers: readonly Float64Array[]): number {
   let missed = 0;
   let spread = 0;
-  drives.forEach((drive, index) => {
+  drives.forEach(({ measured, information }, index) => {
     const answer = answers[index];
     if (!answer) return;
-    let mean = 0;
-    for (const value of drive.measured) mean += value / drive.measured.length;
-    for (let row = 0; row < answer.length; row++) {
-      const value = drive.measured[row] ?? 0;
-      missed += (value - (answer[row] ?? 0)) ** 2;
-      spread += (value - mean) ** 2;
+    const rows = Array.from(measured.keys()).filter((row) => (information[row] ?? 0) > 0);
+    const mean = rows.reduce((sum, row) => sum + (measured[row] ?? 0), 0) / Math.max(1, rows.length);
+    for (const row of rows) {
+      missed += ((measured[row] ?? 0) - (answer[row] ?? 0)) ** 2;
+      spread += ((measured[row] ?? 0) - mean) ** 2;
     }
   });
   return spread === 0 ? 0 : 100 * (1 - Math.sqrt(missed / spread));

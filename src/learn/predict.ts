@@ -7,7 +7,7 @@ import type { Samples } from '../record/samples.ts';
 import { createTrialRunner } from '../trial/runner.ts';
 import { readingOf } from '../trial/simulate.ts';
 import type { MoveShape } from '../trial/trial.ts';
-import { unwrapped } from './evidence.ts';
+import { unwrapped } from './readings.ts';
 
 export interface PredictRequest {
   readonly profile: Profile;
@@ -96,8 +96,8 @@ export interface BandCheck {
 }
 
 /** Share of samples that must lie inside, and how far the others may stray: set so that nine in ten true promises hold. */
-const LEAST_INSIDE = 0.8;
-const MOST_ASTRAY = 1;
+const LEAST_INSIDE = 0.95;
+const MOST_ASTRAY = 0.5;
 
 /** Did a response keep to its band? Rows are compared at the same time by linear interpolation of the band. */
 export function inBand(samples: Samples, band: Band, continuous: number | null = null): BandCheck {

@@ -4,7 +4,7 @@ import type { ResponseModel } from '../plant/response-model.ts';
 import { normalNumbers } from '../trial/chance.ts';
 import { straightMove } from '../trial/course.ts';
 import type { Prior } from './learnt.ts';
-import { decode, encode, PARAMETERS, priorDeviations } from './parameters.ts';
+import { coordinatesOf, decode, PARAMETERS } from './parameters.ts';
 
 /** σ in ln of what a name plate says of top speed and lag; design's model, section 5. */
 const NAMEPLATE_SIGMA = 0.35;
@@ -57,14 +57,12 @@ function unknownResponse(profile: Profile): Omit<ResponseModel, 'delay'> {
 
 /** Seeded draws from a prior, physically valid. */
 export function drawPrior(prior: Prior, count: number, seed: number): readonly ResponseModel[] {
-  const scale = Math.max(prior.sigma.delay, 1e-6);
-  const centre = encode(prior.response, scale);
-  const deviations = priorDeviations(prior);
+  const { centre, deviations, delayBend } = coordinatesOf(prior);
   const chance = normalNumbers(seed, count * PARAMETERS.length);
   return Array.from({ length: count }, (_, draw) =>
     decode(
       centre.map((value, j) => value + (deviations[j] ?? 0) * (chance[draw * PARAMETERS.length + j] ?? 0)),
-      scale,
+      delayBend,
     ),
   );
 }

@@ -2,6 +2,9 @@
 import { levenbergMarquardt } from 'ml-levenberg-marquardt';
 import { driveOf } from '../../src/learn/evidence.ts';
 import { fitModel } from '../../src/learn/fit.ts';
+import { learn } from '../../src/learn/learn.ts';
+import { fitPercent } from '../../src/learn/output-error.ts';
+import { coordinatesOf } from '../../src/learn/parameters.ts';
 import { priorOf } from '../../src/learn/prior.ts';
 import { plantWith, responseOf } from '../../src/mechanism/plant-of.ts';
 import { respond } from '../../src/plant/respond.ts';
@@ -21,7 +24,10 @@ const samples = simulateTrial(
 );
 const drive = driveOf({ samples, gains, outputCap: 1, move }, profile);
 if (typeof drive === 'string') throw new Error(drive);
-const prior = priorOf(profile);
+const coordinates = coordinatesOf(priorOf(profile));
+const fitted = () => fitModel({ drives: [drive], profile, coordinates, rowShift: 0, starts: [] });
+const request = { profile, trials: [{ samples, gains, outputCap: 1, move }], draws: 64, seed: 1 };
+const learnt = learn(request);
 
 const median = (values: readonly number[]) => [...values].sort((a, b) => a - b)[values.length >> 1] ?? 0;
 const timed = (run: () => void) => {
@@ -55,16 +61,29 @@ const library = () =>
     errorTolerance: 1e-9,
   });
 
-const own: number[] = [];
-const other: number[] = [];
-for (let round = 0; round < 11; round++) {
-  own.push(timed(() => fitModel([drive], profile, prior, 0)));
-  other.push(timed(library));
+const WORK = {
+  fit: fitted,
+  'whole answer with intervals and 64 draws': () => learn(request),
+  'the same, started from what was learnt before': () => learn({ ...request, from: learnt }),
+  'ml-levenberg-marquardt, 40 iterations on the same simulation': library,
+};
+const taken = new Map<string, number[]>(Object.keys(WORK).map((name) => [name, []]));
+for (let round = 0; round < 15; round++) {
+  for (const [name, run] of Object.entries(WORK)) {
+    const time = timed(run);
+    // The first rounds are the compiler's.
+    if (round > 3) taken.get(name)?.push(time);
+  }
 }
-const found = fitModel([drive], profile, prior, 0);
+const found = fitted();
+const percent = fitPercent([drive], found.problem.answers.of(found.response));
 console.log(
-  `fit of ${drive.time.length} samples, ${found.free.length} parameters: median ${median(own.slice(1)).toFixed(1)} ms, fit ${found.fit.toFixed(2)} %`,
+  `${drive.time.length} samples, ${found.problem.free.length} parameters, fit ${percent.toFixed(2)} %; medians of 11:`,
 );
-console.log(
-  `ml-levenberg-marquardt, 40 iterations on the same simulation: median ${median(other.slice(1)).toFixed(1)} ms; ours takes ${(median(own.slice(1)) / median(other.slice(1))).toFixed(2)} of it`,
-);
+const reference = median(taken.get('ml-levenberg-marquardt, 40 iterations on the same simulation') ?? []);
+for (const [name, times] of taken) {
+  const middle = median(times);
+  console.log(
+    `  ${name.padEnd(62)} ${middle.toFixed(1).padStart(6)} ms   ${(middle / reference).toFixed(2)} of the library's`,
+  );
+}
