@@ -2,8 +2,13 @@
 import { createReadStream, createWriteStream, mkdtempSync, rmSync, statSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
+import { setFlagsFromString } from 'node:v8';
+import { runInNewContext } from 'node:vm';
 import { parse } from 'csv-parse';
 import { streamMoves } from '../../src/log/stream.ts';
+
+setFlagsFromString('--expose-gc');
+const collect: () => void = runInNewContext('gc');
 
 const folder = mkdtempSync(join(tmpdir(), 'holdfast-bench-'));
 
@@ -16,7 +21,7 @@ async function write(rows: number): Promise<string> {
     const setpoint = Math.floor(row / 400) % 2;
     at += 0.03 * (setpoint - at);
     if (!out.write(`${(row * 0.005).toFixed(3)},${setpoint},${at.toFixed(6)},${(setpoint - at).toFixed(4)}\n`)) {
-      await new Promise((resolve) => out.once('drain', resolve));
+      await new Promise<void>((resolve) => out.once('drain', () => resolve()));
     }
   }
   await new Promise<void>((resolve) => out.end(() => resolve()));
@@ -34,7 +39,7 @@ async function bare(path: string): Promise<number> {
     }),
   );
   parser.resume();
-  await new Promise((resolve) => parser.on('end', resolve));
+  await new Promise<void>((resolve) => parser.on('end', () => resolve()));
   return rows;
 }
 
@@ -42,7 +47,9 @@ async function streamed(path: string): Promise<{ readonly moves: number; readonl
   let heap = 0;
   let seen = 0;
   const { moves } = await streamMoves(path, () => {
-    if (++seen % 50 === 0) heap = Math.max(heap, process.memoryUsage().heapUsed + process.memoryUsage().arrayBuffers);
+    if (++seen % 50 !== 0) return;
+    collect();
+    heap = Math.max(heap, process.memoryUsage().heapUsed + process.memoryUsage().arrayBuffers);
   });
   return { moves, heap: heap / 2 ** 20 };
 }
