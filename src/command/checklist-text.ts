@@ -7,7 +7,7 @@ import { capText } from './gains-text.ts';
 import { columned, wrapped } from './page.ts';
 
 /** What this trial could do, a line a figure; what is not known says so. */
-export function dangerLines({ figures }: Checklist, profile: Profile): readonly string[] {
+function dangerLines({ figures }: Checklist, profile: Profile): readonly string[] {
   const number = (value: number | null, unit: string) =>
     value === null || !Number.isFinite(value) ? NOT_KNOWN : `${formatNumber(value, 3)} ${unit}`;
   const turnsInPlace = profile.quantity === 'speed' && profile.kind !== 'travel' && profile.kind !== 'lift';

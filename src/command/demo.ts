@@ -11,6 +11,7 @@ import { tuneDocument } from './documents.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { unusable } from './failure.ts';
 import { findProfile } from './find-profile.ts';
+import { modelParametersOf, modelWords } from './model-text.ts';
 import { columned, heading, spelt, wrapped } from './page.ts';
 import { runTrials } from './run-trials.ts';
 import { simulatedPlant } from './sim-plant.ts';
@@ -130,25 +131,18 @@ function openingText({ profile, width, style }: TrialPage): string {
 function comparison(profile: Profile, learnt: LearntModel | null, truth: ResponseModel | null): readonly string[] {
   const sheet = responseOf(profile);
   if (learnt === null || truth === null || sheet === null) return [];
-  const perSecond = profile.quantity === 'speed' ? '' : '/s';
-  const speed = (value: number) => `${formatQuantity(value, profile.unit)}${perSecond}`;
-  const percent = (value: number) => `${formatNumber(100 * value, 3)} %`;
-  const ms = (value: number) => `${formatNumber(1000 * value, 3)} ms`;
-  const row = (label: string, key: 'topSpeed' | 'lag' | 'drag' | 'hold', show: (value: number) => string) => {
-    const { best, low, high } = learnt.intervals[key];
-    return [label, show(sheet[key]), show(best), `${show(low)} to ${show(high)}`, show(truth[key])];
-  };
-  const carries = profile.kind === 'lift' || profile.kind === 'arm';
-  const rows = [
-    ['', 'sheet', 'learnt', '95 % interval', 'true'],
-    row('top speed', 'topSpeed', speed),
-    row('lag', 'lag', ms),
-    row('drag', 'drag', percent),
-    ...(carries ? [row('hold', 'hold', percent)] : []),
-  ];
+  const words = modelWords(profile);
+  const rows = modelParametersOf(profile)
+    .filter((name) => name !== 'breakaway' && name !== 'delay')
+    .map((name) => {
+      const [label, show] = words[name];
+      const { best, low, high } = learnt.intervals[name];
+      return [label, show(sheet[name]), show(best), `${show(low)} to ${show(high)}`, show(truth[name])];
+    });
+  const head = ['', 'sheet', 'learnt', '95 % interval', 'true'];
   return [
     'What the trials found out',
-    ...columned(rows, ['left', 'right', 'right', 'left', 'right']).map((line) => `  ${line}`),
+    ...columned([head, ...rows], ['left', 'right', 'right', 'left', 'right']).map((line) => `  ${line}`),
   ];
 }
 
@@ -158,5 +152,11 @@ function closingLines(profile: Profile, { width }: CommandContext): readonly str
     [`holdfast checklist ${profile.name}`, 'what is ticked before each powered trial'],
     ['holdfast read LOG', 'what one of your own logs shows'],
   ];
-  return ['From here', ...columned(rows, ['left', 'left']).flatMap((line) => wrapped(`  ${line}`, width))];
+  const warning = 'These gains belong to an invented mechanism: none of them is fit for a real machine.';
+  return [
+    ...wrapped(warning, width),
+    '',
+    'From here',
+    ...columned(rows, ['left', 'left']).flatMap((line) => wrapped(`  ${line}`, width)),
+  ];
 }

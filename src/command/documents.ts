@@ -7,9 +7,9 @@ import type { Figures } from '../trial/figures.ts';
 
 // The parts of the JSON results that several commands share; shapes in contracts, section 5.
 
-export type Triple = readonly [best: number, low: number, high: number];
+type Triple = readonly [best: number, low: number, high: number];
 
-export const tripleOf = ({ best, low, high }: Interval): Triple => [best, low, high];
+const tripleOf = ({ best, low, high }: Interval): Triple => [best, low, high];
 
 /** The eight figures of every result, by contract's name; null = it has no value. */
 export function figuresDocument(figures: Figures) {

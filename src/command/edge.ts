@@ -31,7 +31,7 @@ export interface Environment {
 }
 
 /** Which streams are a terminal, and how large it is. */
-export interface TerminalFacts {
+interface TerminalFacts {
   readonly input: boolean;
   readonly output: boolean;
   readonly errors: boolean;

@@ -3,6 +3,7 @@ import { plantWith } from '../mechanism/plant-of.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
 import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
+import type { Samples } from '../record/samples.ts';
 import { type Figures, figuresOf } from '../trial/figures.ts';
 import { readingOf, simulateTrial } from '../trial/simulate.ts';
 import { figuresDocument } from './documents.ts';
@@ -30,7 +31,7 @@ export function expectedFigures(
   trial: Rehearsed,
   seed: number,
 ): FigureSpread {
-  const measure = (response: ResponseModel) => figuresDocument(rehearse(profile, response, trial, seed));
+  const measure = (response: ResponseModel) => figuresDocument(figuresOn(profile, response, trial, seed));
   const middle = measure(best);
   const all = draws.map(measure);
   const spread = (name: FigureName): Spread => {
@@ -46,12 +47,17 @@ export function expectedFigures(
   return Object.fromEntries(names.map((name) => [name, spread(name)])) as Record<FigureName, Spread>;
 }
 
-function rehearse(profile: Profile, response: ResponseModel, trial: Rehearsed, seed: number): Figures {
-  const { controller, continuous, target, sensor } = profile;
+/** One simulated trial on a response model, read as the profile's sensor reads. */
+export function rehearse(profile: Profile, response: ResponseModel, trial: Rehearsed, seed: number): Samples {
+  const { controller, continuous } = profile;
   const mechanism = { plant: plantWith(profile, response), reading: readingOf(profile) };
-  const samples = simulateTrial(mechanism, { controller, continuous, shape: null, ...trial }, seed);
+  return simulateTrial(mechanism, { controller, continuous, shape: null, ...trial }, seed);
+}
+
+function figuresOn(profile: Profile, response: ResponseModel, trial: Rehearsed, seed: number): Figures {
+  const { controller, continuous, target, sensor } = profile;
   const full = fullOutput(controller);
-  return figuresOf(samples, {
+  return figuresOf(rehearse(profile, response, trial, seed), {
     move: trial.move,
     tolerance: target.tolerance,
     continuous,

@@ -7,7 +7,7 @@ export interface Where {
   readonly field: string | null;
 }
 
-export const NOWHERE: Where = { file: null, line: null, field: null };
+const NOWHERE: Where = { file: null, line: null, field: null };
 
 /** `holdfast/error@1`; contracts, section 5. */
 export interface ErrorDocument {

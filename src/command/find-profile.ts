@@ -49,7 +49,7 @@ export async function starters(): Promise<readonly Profile[]> {
   return listed.flatMap(({ stored }) => (stored === null ? [] : [stored.profile]));
 }
 
-export async function starterNamed(name: string): Promise<Profile | null> {
+async function starterNamed(name: string): Promise<Profile | null> {
   return (await starters()).find((starter) => starter.name === name) ?? null;
 }
 

@@ -23,7 +23,7 @@ export interface OutsidePlantOptions {
 }
 
 /** `holdfast/trial-request@1`; contracts, section 3. */
-export function trialRequest(proposal: Proposal, trial: number, profile: Profile): Readonly<Record<string, unknown>> {
+function trialRequest(proposal: Proposal, trial: number, profile: Profile): Readonly<Record<string, unknown>> {
   return {
     format: 'holdfast/trial-request@1',
     trial,

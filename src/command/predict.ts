@@ -12,10 +12,12 @@ import type { Move, Profile } from '../mechanism/profile.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import type { Band } from '../record/band.ts';
+import { readTrial } from '../trial/reading.ts';
+import type { Verdict } from '../trial/verdict.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { marginsDocument } from './documents.ts';
 import { EXIT, type ExitCode } from './edge.ts';
-import { expectedFigures, expectedLines, type FigureSpread } from './expected.ts';
+import { expectedFigures, expectedLines, type FigureSpread, rehearse } from './expected.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
 import { capText, gainsLine } from './gains-text.ts';
@@ -66,6 +68,8 @@ interface Predicted {
   readonly figures: FigureSpread;
   readonly margins: Margins;
   readonly worst: Margins | null;
+  /** What the best estimate's own response would be called. */
+  readonly verdicts: readonly Verdict[];
   readonly from: string;
 }
 
@@ -142,12 +146,24 @@ function predictedOf(
     settings: profile.controller,
     sensorDelay: profile.sensor?.delay ?? 0,
   });
+  const trial = { gains, move, duration, outputCap };
+  const verdicts = readTrial(rehearse(profile, best, trial, seed), {
+    profile,
+    gains,
+    move,
+    outputCap,
+    response: best,
+    reach: null,
+    nameplate: null,
+    promise: null,
+  }).verdicts;
   return {
     profile,
     gains,
     move,
     band,
-    figures: expectedFigures(profile, best, responses, { gains, move, duration, outputCap }, seed),
+    verdicts,
+    figures: expectedFigures(profile, best, responses, trial, seed),
     margins: marginsOf(loop(best)),
     worst: worstMargins(responses.map(loop)),
     from: learnt === null ? 'the nameplate' : 'the logs',
@@ -198,6 +214,7 @@ function predictText(result: Predicted, { width, style }: CommandContext): strin
     '',
     ...expectedLines(result.figures, profile),
     '',
+    ...result.verdicts.map(({ is, because }, k) => hanging(k === 0 ? 'Verdict' : '', `${is}: ${because}`, width)),
     hanging('Margins', marginsLine(margins), width),
     ...(worst === null ? [] : [hanging('Worst', marginsLine(worst), width)]),
     '',

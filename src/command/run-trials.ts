@@ -21,7 +21,7 @@ export type Admission =
   | { readonly open: 'interrupted' };
 
 /** What happens in a run, told as it happens. */
-export type RunEvent =
+type RunEvent =
   | { readonly kind: 'proposed'; readonly proposal: Proposal; readonly trial: number }
   | { readonly kind: 'read'; readonly record: TrialRecord; readonly reading: TrialReading };
 

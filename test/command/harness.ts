@@ -94,15 +94,4 @@ export function snapshotOf(folder: string): readonly string[] {
 
 export const OUTSIDE = join(import.meta.dirname, '../fixtures/outside');
 
-/** The outside simulator as words for `--plant`. */
-export function simulatorLine(mechanism: string, ...switches: readonly string[]): string {
-  const words = [
-    process.execPath,
-    join(OUTSIDE, 'simulator.mjs'),
-    join(OUTSIDE, `mechanisms/${mechanism}.json`),
-    ...switches,
-  ];
-  return `cmd:${words.map((word) => `'${word}'`).join(' ')}`;
-}
-
 export const outsideProfile = (mechanism: string): string => join(OUTSIDE, `profiles/${mechanism}.json`);
