@@ -14,7 +14,7 @@ const here = ['--profiles', cwd];
 describe('demo', () => {
   test('writes nothing, tells the same story for the same seed, and another for another', async () => {
     const folder = temporaryFolder();
-    const words = ['demo', 'lift', '--profiles', join(folder, 'none'), '--seed', '3'];
+    const words = ['demo', 'drivetrain', '--profiles', join(folder, 'none'), '--seed', '3'];
     const [a, b, c] = [
       await holdfast(words, { cwd: folder }),
       await holdfast(words, { cwd: folder }),
