@@ -20,6 +20,8 @@ export interface Gathered {
 /** Collects rows of cells as columns of numbers, checking each. */
 export interface Gatherer {
   readonly take: TakeRow;
+  /** Judges the row that was held back, which another has followed. */
+  readonly complete: () => void;
   /** Judges the row that was held back (a last row may be cut off) and gives the tally. */
   readonly end: () => Gathered;
   /** Columns so far; time as the log has it. */
@@ -86,6 +88,10 @@ export function gatherer(layout: Layout, columns: Columns, name: string, repair:
     take: (cells, line) => {
       if (waiting !== null) judge(waiting.cells, waiting.line);
       waiting = { cells, line };
+    },
+    complete: () => {
+      if (waiting !== null) judge(waiting.cells, waiting.line);
+      waiting = null;
     },
     end: () => {
       let cutOff = false;

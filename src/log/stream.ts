@@ -14,8 +14,9 @@ export interface StreamSummary {
 /** Rows held at most before what is there is handed on, however long the move. */
 const MOST_HELD = 200_000;
 
-/** Rows between looks at whether a move has ended. */
+/** Rows gathered before a new setpoint is taken for the end of a move, and rows that it must have stood still before. */
 const LOOK_EVERY = 512;
+const STANDING = 40;
 
 /**
  * Hands over a log move by move while it is read: memory is bounded by the longest move, not by the file.
@@ -39,16 +40,19 @@ export async function streamMoves(
   const setpointAt = shape.columns.setpoint?.index ?? -1;
   let standing = '';
   let held = 0;
+  let stood = 0;
   await eachRow(source.pieces, shape.layout, source.name, (cells, line) => {
     const wanted = cells[setpointAt] ?? '';
     const changed = wanted !== standing;
     standing = wanted;
-    // A new setpoint after a long stand closes the move before it; the rows before are complete then.
-    if ((changed && held >= LOOK_EVERY) || held >= MOST_HELD) {
+    // A new setpoint after it has stood a while closes the move before it; the rows before are complete then.
+    if ((changed && stood >= STANDING && held >= LOOK_EVERY) || held >= MOST_HELD) {
+      rows.complete();
       flush();
       held = 0;
     }
-    held = changed ? 0 : held + 1;
+    held++;
+    stood = changed ? 0 : stood + 1;
     rows.take(cells, line);
   });
   const gathered = rows.end();
