@@ -22,7 +22,7 @@ export function metOutcome(situation: Situation, gains: Gains): Outcome {
     met: true,
     stopped: 'target met',
     gains,
-    why: `Met in trials on ${target.moves.length === 1 ? 'the move' : `all ${target.moves.length} moves`} of the target.${figures} Take a snapshot before anything is changed.`,
+    why: `Met in trials on ${target.moves.length === 1 ? 'the move' : `all ${target.moves.length} moves`} of the target.${figures} Keep these gains with their logs before anything is changed.`,
     margins: marginsFor(situation, gains),
   };
 }

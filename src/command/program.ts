@@ -11,7 +11,7 @@ import { pageWidth, styleOf } from './style.ts';
 import { VERSION } from './version.ts';
 
 const OPENING = `Holdfast: gains for motor-driven mechanisms, in few trials, with reasons.
-With no arguments it opens the console.`;
+The console that it opens without arguments is not built yet.`;
 
 const EXAMPLES: readonly (readonly [line: string, does: string])[] = [
   ['holdfast demo', 'a complete guided run, simulated'],
