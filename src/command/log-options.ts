@@ -1,6 +1,7 @@
 import { type Command, InvalidArgumentError, Option } from 'commander';
 import type { OutputUnit } from '../controller/settings.ts';
-import { type Column, type Columns, ROLES, type Role } from '../log/columns.ts';
+import type { Column, Columns } from '../log/columns.ts';
+import { ROLES, type Role } from '../log/headers.ts';
 import { type LogReading, PLAIN_READ, type ReadOptions } from '../log/read.ts';
 import { POSITION_UNITS, type Profile, SPEED_UNITS, type Unit } from '../mechanism/profile.ts';
 import { printable } from '../record/printable.ts';

@@ -1,6 +1,6 @@
 import type { ControllerSettings, OutputUnit } from '../controller/settings.ts';
 import { NO_GAINS } from '../controller/settings.ts';
-import { knownUnit } from '../log/columns.ts';
+import { knownUnit } from '../log/headers.ts';
 import type { LogReading } from '../log/read.ts';
 import type { Kind, Profile, Unit } from '../mechanism/profile.ts';
 import { unitScale } from '../mechanism/units.ts';

@@ -1,8 +1,8 @@
 import { printable } from '../record/printable.ts';
 import type { Samples } from '../record/samples.ts';
-import type { Column, Columns, Role } from './columns.ts';
-import { ROLES } from './columns.ts';
+import type { Column, Columns } from './columns.ts';
 import { LogError } from './error.ts';
+import { ROLES, type Role } from './headers.ts';
 import type { Layout } from './layout.ts';
 import { type Growing, growing, numberOf } from './numbers.ts';
 import type { TakeRow } from './rows.ts';

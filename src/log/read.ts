@@ -1,9 +1,10 @@
 import type { OutputUnit } from '../controller/settings.ts';
 import type { Unit } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
-import { type Column, type Columns, columnsOf, type Role } from './columns.ts';
+import { type Column, type Columns, columnsOf } from './columns.ts';
 import { LogError } from './error.ts';
 import { type Gathered, gatherer } from './gather.ts';
+import type { Role } from './headers.ts';
 import { type Layout, layoutOf } from './layout.ts';
 import { eachLine, eachRow } from './rows.ts';
 import { bytesText, fileText, type TextSource } from './source.ts';

@@ -74,7 +74,10 @@ export type KeptTrial = z.infer<typeof keptTrial>;
 export type RunStart = Pick<KeptRun, 'profile' | 'profileDigest' | 'plant' | 'seed' | 'maxTrials' | 'event'>;
 
 /** A trial as it is handed over to be kept: all but the file and digest of its log. */
-export type NewTrial = Pick<KeptTrial, 'trial' | 'stage' | 'gains' | 'move' | 'outputCap' | 'band' | 'why' | 'figures' | 'verdict' | 'inBand' | 'signature'>;
+export type NewTrial = Pick<
+  KeptTrial,
+  'trial' | 'stage' | 'gains' | 'move' | 'outputCap' | 'band' | 'why' | 'figures' | 'verdict' | 'inBand' | 'signature'
+>;
 
 const runsFolder = (store: Store, profile: string) => join(store.folder, 'trials', profile);
 const runPath = (store: Store, run: Pick<KeptRun, 'profile' | 'id'>) =>
@@ -128,10 +131,7 @@ export async function openRunOf(
 }
 
 /** Starts a run under the next free number. */
-export async function startRun(
-  store: Store,
-  start: RunStart,
-): Promise<KeptRun> {
+export async function startRun(store: Store, start: RunStart): Promise<KeptRun> {
   return withLock(store.folder, async () => {
     const entries = await readdir(runsFolder(store, start.profile)).catch(() => []);
     const last = entries
@@ -151,12 +151,7 @@ export async function startRun(
 }
 
 /** Keeps a trial: its log first, then the run that names it. */
-export async function keepTrial(
-  store: Store,
-  run: KeptRun,
-  trial: NewTrial,
-  logText: string,
-): Promise<KeptRun> {
+export async function keepTrial(store: Store, run: KeptRun, trial: NewTrial, logText: string): Promise<KeptRun> {
   const log = `${String(trial.trial).padStart(3, '0')}-${trial.stage}.csv`;
   return withLock(store.folder, async () => {
     await writeDurably(join(runsFolder(store, run.profile), run.id, log), logText);
