@@ -4,6 +4,7 @@ import type { Drive } from './evidence.ts';
 import { guessesFrom } from './guess.ts';
 import { covarianceOf, type LeastSquaresOptions, leastSquares, sumOfSquares } from './least-squares.ts';
 import { leftoverOf } from './leftover.ts';
+import { shiftedRows } from './output-error.ts';
 import { type Coordinates, decode, placeOf } from './parameters.ts';
 import { type Problem, problemOf, residualsOf, type Weighing } from './problem.ts';
 
@@ -39,7 +40,8 @@ export function fitModel(request: FitRequest): Fitted {
   const problem = problemOf(drives, request.profile, coordinates, request.rowShift);
   const open: Weighing = { sigma: drives.map((drive) => openSigma(drive)), independence: 1 };
   const first = bestOf(problem, open, startsOf(request, problem));
-  const rough = refine(problem, open, first);
+  // What was learnt before is near enough to be weighed at once.
+  const rough = request.starts.length > 0 ? first : refine(problem, open, first);
   const near = weighingAt(problem, rough);
   const nearer = refine(problem, near, bestBreakaway(problem, near, rough));
   return settle(problem, weighingAt(problem, nearer), nearer);
@@ -110,14 +112,17 @@ function leastSigma(drive: Drive): number {
 /** Dead times that starts are guessed for, in periods of the controller. */
 const DELAYS = [0, 0.5, 1, 2, 4, 8];
 
-function startsOf({ drives, profile, coordinates, starts }: FitRequest, problem: Problem): readonly Float64Array[] {
+function startsOf(
+  { drives, profile, coordinates, rowShift, starts }: FitRequest,
+  problem: Problem,
+): readonly Float64Array[] {
   const base = decode(coordinates.centre, coordinates.delayBend);
   const { period } = profile.controller;
   const models =
     starts.length > 0
       ? starts
       : guessesFrom(
-          drives,
+          drives.map((drive) => ({ ...drive, output: shiftedRows(drive.output, rowShift) })),
           base,
           DELAYS.map((periods) => periods * period),
           profile.kind === 'lift',

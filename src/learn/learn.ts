@@ -1,8 +1,10 @@
+import type { Profile } from '../mechanism/profile.ts';
 import { MODEL_PARAMETERS, type ModelParameter } from '../plant/response-model.ts';
 import { alignedFit } from './alignment.ts';
+import { deadTimeOf } from './dead-time.ts';
 import { type Drive, driveOf, type Unusable } from './evidence.ts';
 import { intervalsOf } from './intervals.ts';
-import type { LearnRequest, LearntModel, Prior } from './learnt.ts';
+import type { LearnRequest, LearntModel, Prior, TrialEvidence } from './learnt.ts';
 import { fitPercent } from './output-error.ts';
 import { coordinatesOf, type FitParameter, placeOf } from './parameters.ts';
 import { drawsFrom, type Posterior, posteriorOf } from './posterior.ts';
@@ -14,6 +16,9 @@ const PRIOR_DRAWS = 400;
 /** A fit under this explains the logs too badly to be searched on, %; unless all that is left is the sensor's own. */
 const LEAST_FIT = 70;
 const SENSOR_ALONE = 2;
+
+/** A prior wider than this, σ in ln, is no more than a guess. */
+const GUESSWORK = 0.8;
 
 /** An interval wider than this share of its prior's has learnt nothing. */
 const UNLEARNT = 0.85;
@@ -29,8 +34,8 @@ export function learn(request: LearnRequest): LearntModel {
   const drives: Drive[] = [];
   request.trials.forEach((trial, index) => {
     const drive = driveOf(trial, profile);
-    if (typeof drive === 'string') warnings.push(`Trial ${index + 1} teaches nothing: ${REASONS[drive]}.`);
-    else drives.push(drive);
+    if (typeof drive !== 'string') drives.push(drive);
+    else warnings.push(`Trial ${index + 1} teaches nothing: ${REASONS[drive]}.${answersAfter(trial, drive, profile)}`);
   });
   if (drives.length === 0) return unlearntModel(request, prior, warnings);
   const { fitted: first, rowShift } = alignedFit({
@@ -53,8 +58,13 @@ export function learn(request: LearnRequest): LearntModel {
   const outputRebuilt = drives.some((drive) => drive.rebuilt);
   if (outputRebuilt) warnings.push('The log has no output; it was rebuilt from the gains.');
   const residual = fitted.weighing.sigma[0] ?? 0;
-  const usable = fit >= LEAST_FIT || residual <= SENSOR_ALONE * (drives[0]?.floor ?? 0);
-  if (!usable) warnings.push(`The model explains only ${fit.toFixed(0)} % of the motion: it is not relied on.`);
+  const unlearnt = unlearntOf(posterior);
+  const explains = fit >= LEAST_FIT || residual <= SENSOR_ALONE * (drives[0]?.floor ?? 0);
+  if (!explains) warnings.push(`The model explains only ${fit.toFixed(0)} % of the motion: it is not relied on.`);
+  // With a nameplate, what the trials do not tell is roughly known all the same.
+  const isBlind = prior.sigma.topSpeed > GUESSWORK && unlearnt.includes('topSpeed') && unlearnt.includes('lag');
+  if (isBlind)
+    warnings.push('The trials tell neither top speed nor lag, and no nameplate does: move it farther or faster.');
   return {
     response: fitted.response,
     intervals: intervalsOf(fitted.response, posterior.models, posterior.shares),
@@ -63,10 +73,20 @@ export function learn(request: LearnRequest): LearntModel {
     residual,
     rowShift,
     outputRebuilt,
-    unlearnt: unlearntOf(posterior),
-    usable,
+    unlearnt,
+    usable: explains && !isBlind,
     warnings,
   };
+}
+
+/** What a log without output and gains still tells: how long its reading takes to answer. */
+function answersAfter({ samples }: TrialEvidence, why: Unusable, profile: Profile): string {
+  if (why !== 'no output and no gains') return '';
+  const { resolution, noise } = profile.sensor ?? { resolution: 0, noise: 0 };
+  const dead = deadTimeOf(samples, Math.max(1.5 * resolution, 4 * noise));
+  if (dead === null) return '';
+  const [low, best, high] = [dead.low, dead.best, dead.high].map((time) => time.toFixed(3));
+  return ` Its reading answers the setpoint after ${best} s (${low} to ${high} s).`;
 }
 
 const REASONS: Readonly<Record<Unusable, string>> = {

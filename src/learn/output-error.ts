@@ -22,7 +22,7 @@ export function answersTo(drives: readonly Drive[], profile: Profile, rowShift: 
   const prepared = drives.map((drive) => ({
     drive,
     bounds: boundsFor(nameplate, drive),
-    output: shifted(drive.output, rowShift),
+    output: shiftedRows(drive.output, rowShift),
     column: new Float64Array(drive.time.length),
   }));
   const columns = prepared.map(({ column }) => column);
@@ -59,7 +59,8 @@ function boundsFor(nameplate: PlantModel, drive: Drive): PlantModel {
   };
 }
 
-function shifted(output: Float64Array, rows: number): Float64Array {
+/** A column moved earlier by so many rows; the last value is kept. */
+export function shiftedRows(output: Float64Array, rows: number): Float64Array {
   if (rows === 0) return output;
   const last = output.length - 1;
   return output.map((_, row) => output[Math.min(last, row + rows)] ?? 0);

@@ -25,6 +25,8 @@ export interface PredictRequest {
 
 export interface Prediction {
   readonly band: Band;
+  /** The draw's own trial that keeps nearest to the band's middle: unlike the middle, a response that can happen. */
+  readonly response: Samples;
 }
 
 /** Rows by which a response may be early or late without being outside: a tick each way. */
@@ -48,21 +50,44 @@ export function predict(request: PredictRequest): Prediction {
   const rows = runner.columns.time.length;
   const courses = draws.map((response) => {
     runner.run({ ...plantWith(profile, response), coupling: null }, request.gains, move, request.outputCap);
-    return runner.columns.measured.slice(0, rows);
+    return { measured: runner.columns.measured.slice(0, rows), output: runner.columns.output.slice(0, rows) };
   });
-  const noise = 1.645 * Math.hypot(request.residual, profile.sensor?.noise ?? 0) + (profile.sensor?.resolution ?? 0);
+  // What a fit leaves holds the sensor's noise and steps already; before any fit they stand alone.
+  const noise =
+    1.645 * Math.max(request.residual, profile.sensor?.noise ?? 0) + 0.5 * (profile.sensor?.resolution ?? 0);
   const low = new Float64Array(rows);
   const middle = new Float64Array(rows);
   const high = new Float64Array(rows);
   const values = new Float64Array(courses.length);
   for (let row = 0; row < rows; row++) {
-    for (let draw = 0; draw < courses.length; draw++) values[draw] = courses[draw]?.[row] ?? 0;
+    for (let draw = 0; draw < courses.length; draw++) values[draw] = courses[draw]?.measured[row] ?? 0;
     values.sort();
     low[row] = percentile(values, 0.05) - noise;
     middle[row] = percentile(values, 0.5);
     high[row] = percentile(values, 0.95) + noise;
   }
-  return { band: { time: runner.columns.time.slice(0, rows), low: spreadLow(low), middle, high: spreadHigh(high) } };
+  const time = runner.columns.time.slice(0, rows);
+  const nearest = courses.reduce((best, course) =>
+    distance(course.measured, middle) < distance(best.measured, middle) ? course : best,
+  );
+  return {
+    band: { time, low: spreadLow(low), middle, high: spreadHigh(high) },
+    response: {
+      ...nearest,
+      time,
+      setpoint: runner.columns.setpoint.slice(0, rows),
+      supply: null,
+      current: null,
+      enabled: null,
+      parts: null,
+    },
+  };
+}
+
+function distance(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let row = 0; row < a.length; row++) sum += ((a[row] ?? 0) - (b[row] ?? 0)) ** 2;
+  return sum;
 }
 
 function percentile(sorted: Float64Array, share: number): number {
@@ -96,7 +121,7 @@ export interface BandCheck {
 }
 
 /** Share of samples that must lie inside, and how far the others may stray: set so that nine in ten true promises hold. */
-const LEAST_INSIDE = 0.95;
+const LEAST_INSIDE = 0.98;
 const MOST_ASTRAY = 0.5;
 
 /** Did a response keep to its band? Rows are compared at the same time by linear interpolation of the band. */

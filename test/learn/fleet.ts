@@ -30,11 +30,18 @@ export function starterProfile(name: string): Profile {
   return JSON.parse(readFileSync(join(import.meta.dirname, '../../profiles', `${name}.json`), 'utf8'));
 }
 
+/** The generator's state starts nearly empty, and its first numbers are far out for every seed: they are passed over. */
+function chancesOf(seed: number, count: number): Float64Array {
+  return normalNumbers(seed, PASSED_OVER + count).subarray(PASSED_OVER);
+}
+
+const PASSED_OVER = 16;
+
 /** Member `index` of a fleet: seeded, made from the starter mechanisms. Every third is of unknown make. */
 export function memberOf(index: number, seed: number): Member {
   const name = NAMES[index % NAMES.length] ?? 'lift';
   const own = 1000 * seed + index;
-  const n = normalNumbers(own, 16);
+  const n = chancesOf(own, 16);
   const base = starterProfile(name);
   const nameplate = responseOf(base);
   if (nameplate === null) throw new Error(`${name} has no nameplate`);
@@ -69,7 +76,7 @@ function noiseOf(profile: Profile, n: Float64Array): number {
 /** The trials of a run as a person might make them: little at first, then more; each about a third off what is best. */
 export function trialOf(member: Member, trial: number): Planned {
   const { profile, truth } = member;
-  const n = normalNumbers(member.seed + 77 + 13 * trial, 4);
+  const n = chancesOf(member.seed + 77 + 13 * trial, 4);
   const moves = profile.target.moves;
   const [start = 0, end = 0] = moves[trial % moves.length] ?? [];
   const size = trial === 0 ? 0.4 : 1;

@@ -126,6 +126,62 @@ describe('learning', () => {
     expect(learnt.warnings.join(' ')).toMatch(/teaches nothing/);
   });
 
+  test('a few rows without a number, and a glitch of one row, do not spoil the rest', () => {
+    const trial = trialOf(turret, nameplate, gentle(nameplate, 4), { from: 0, to: 90 }, 7);
+    const measured = Float64Array.from(trial.samples.measured).fill(Number.NaN, 20, 24);
+    measured[12] = 900;
+    const whole = learn({ profile: turret, trials: [trial], draws: 8, seed: 1 });
+    const spoilt = learn({
+      profile: turret,
+      trials: [{ ...trial, samples: { ...trial.samples, measured } }],
+      draws: 8,
+      seed: 1,
+    });
+    expect(spoilt.usable).toBe(true);
+    expect(spoilt.warnings.join(' ')).toMatch(/4 rows hold no number/);
+    expect(spoilt.response.topSpeed / whole.response.topSpeed).toBeCloseTo(1, 2);
+  });
+
+  test('started from what was learnt before, it ends where it would have without', () => {
+    const first = trialOf(turret, nameplate, gentle(nameplate, 2), { from: 0, to: 90 }, 8);
+    const second = trialOf(turret, nameplate, gentle(nameplate, 5), { from: 90, to: 0 }, 9);
+    const request = { profile: turret, draws: 8, seed: 1 };
+    const before = learn({ ...request, trials: [first] });
+    const cold = learn({ ...request, trials: [first, second] });
+    const warm = learn({ ...request, trials: [first, second], from: before });
+    for (const name of ['topSpeed', 'lag', 'drag'] as const) {
+      expect(warm.response[name] / cold.response[name]).toBeCloseTo(1, 2);
+    }
+  });
+
+  test('the speed logged of a position mechanism teaches the same top speed and lag', () => {
+    // Open loop: half output for 1.5 s, then none; speed has a closed form, v = K(u − c)(1 − e^(−t/τ)).
+    const { topSpeed: K, lag: tau, drag: c } = { topSpeed: 700, lag: 0.2, drag: 0.06 };
+    const time = Float64Array.from({ length: 76 }, (_, k) => 0.02 * k);
+    const measured = time.map((t) => K * (0.5 - c) * -Math.expm1(-t / tau));
+    const samples = {
+      time,
+      setpoint: new Float64Array(time.length),
+      measured,
+      output: new Float64Array(time.length).fill(0.5),
+      supply: null,
+      current: null,
+      enabled: null,
+      parts: null,
+    };
+    const plain: Profile = { ...turret, supply: null, sensor: { resolution: 0.09, noise: 0, delay: 0 } };
+    const learnt = learn({
+      profile: plain,
+      trials: [{ samples, gains: null, outputCap: 1, move: null, quantity: 'speed' }],
+      draws: 8,
+      seed: 1,
+    });
+    expect(learnt.fit).toBeGreaterThan(99.5);
+    expect(learnt.response.lag / tau).toBeCloseTo(1, 1);
+    // One level of output tells K·(u − c), not both.
+    expect((learnt.response.topSpeed * (0.5 - learnt.response.drag)) / (K * (0.5 - c))).toBeCloseTo(1, 2);
+  });
+
   test('a supply that was logged scales the output', () => {
     const trial = trialOf(
       turret,
