@@ -53,7 +53,7 @@ export interface TrialRunner {
 
 /**
  * Prepares for many trials that differ in plant, gains, move and cap only. Nothing is allocated a tick, and a plant that comes back
- * is laid out once. The trial is that of {@link simulateTrial}.
+ * is laid out once. The trial is that of {@link simulateTrial}, to rounding.
  */
 export function createTrialRunner(setup: TrialSetup): TrialRunner {
   const stand = standOf(setup);

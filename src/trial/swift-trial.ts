@@ -18,7 +18,7 @@ const BLOCK = 128;
  * A trial with even ticks on an exactly solved plant, a step of the setpoint, and a controller without slew, pace or turning hold:
  * the loop of the search, tens of millions of ticks a second. It is cut into stretches in which nothing happens: the mechanism
  * moves on one way, or rests. Each says on plain numbers what `tick` and `strideRigid` say and agrees with them to rounding
- * (test/trial/swift-trial.test.ts); what happens between two stretches is left to `strideRigid`.
+ * (test/trial/simulate.test.ts); what happens between two stretches is left to `strideRigid`.
  *
  * @returns rows written
  */

@@ -1,5 +1,5 @@
 /**
- * How fast closed-loop trials run: the exact solver against three others on the same 256 seeded cases (test/bench/solver-cases.ts), one
+ * How fast closed-loop trials run: the exact solver against three others on the same 256 seeded cases (test/bench/solver/cases.ts), one
  * core, PID position loop of 250 ticks: (1) 1 ms classical Runge–Kutta in TypeScript, (2) the same algorithm in C (solver.c, built
  * with gcc -O2 into a temporary folder), (3) odex, a general ODE solver. Repetitions alternate and medians of ratios are printed,
  * because the machine is shared. Errors are against odex.
@@ -12,8 +12,8 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { createTrialRunner } from '../../src/trial/runner.ts';
 import { oracleAdvance } from '../plant/oracle.ts';
-import { DURATION, RESOLUTION, SETTINGS, type SolverCase, solverCases } from './solver-cases.ts';
-import { runRungeKutta, runWith } from './solver-loop.ts';
+import { DURATION, RESOLUTION, SETTINGS, type SolverCase, solverCases } from './solver/cases.ts';
+import { runRungeKutta, runWith } from './solver/loop.ts';
 
 const cases = solverCases(256);
 

@@ -1,4 +1,4 @@
-import { DURATION, SETTINGS, type SolverCase } from './solver-cases.ts';
+import { DURATION, SETTINGS, type SolverCase } from './cases.ts';
 
 /** Moves a plant's position and speed by one tick under an output. */
 export type AdvanceTick = (example: SolverCase, state: [number, number], u: number) => void;

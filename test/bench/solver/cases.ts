@@ -1,7 +1,7 @@
 import { uniformFloat64 } from 'pure-rand/distribution/uniformFloat64';
 import { xoroshiro128plus } from 'pure-rand/generator/xoroshiro128plus';
-import type { ControllerSettings, Gains } from '../../src/controller/settings.ts';
-import type { PlantModel } from '../../src/plant/response-model.ts';
+import type { ControllerSettings, Gains } from '../../../src/controller/settings.ts';
+import type { PlantModel } from '../../../src/plant/response-model.ts';
 
 /** One closed-loop trial of the benchmark: what a search would rehearse. */
 export interface SolverCase {
