@@ -2,15 +2,16 @@ import { nextStep } from '../coach/next-step.ts';
 import type { Proposal, RunHistory, TrialRecord } from '../coach/step.ts';
 import { openRunOf } from '../profile/run.ts';
 import { profileDigest } from '../profile/store.ts';
+import { checklistText } from '../report/checklist.ts';
+import { gainsLine } from '../report/gains.ts';
+import { hanging, heading, set, spelt } from '../report/page.ts';
 import type { Checklist } from '../safety/hazard.ts';
-import { checklistText, trialLine } from './checklist-text.ts';
+import { trialText } from './checklist-text.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { refused } from './failure.ts';
 import { type FoundProfile, findProfile } from './find-profile.ts';
-import { gainsLine } from './gains-text.ts';
 import { recordsOf } from './kept-run.ts';
-import { hanging, heading, spelt } from './page.ts';
 import { dangersOf } from './planned-trial.ts';
 import { fixedRefusals, gateRequest, refusal } from './powered.ts';
 
@@ -57,7 +58,7 @@ async function checklist(name: string, options: ChecklistOptions, context: Comma
   }
   present(context, {
     json: () => checklistDocument(dangers.checklist),
-    text: () => spelt(pageText(dangers.checklist, proposal, trial, found, context), context.style),
+    text: () => pageText(dangers.checklist, proposal, trial, found, context),
   });
   return EXIT.done;
 }
@@ -85,16 +86,15 @@ function pageText(
   proposal: Proposal,
   trial: number,
   { profile }: FoundProfile,
-  { width, style }: CommandContext,
+  page: CommandContext,
 ): string {
-  return [
-    heading(`${profile.title} · checklist of trial ${trial}, ${proposal.stage}`, width, style),
-    hanging('Gains', gainsLine(proposal.gains, profile), width),
-    hanging('Move', trialLine(proposal, profile), width),
+  const lines = [
+    heading(`${profile.title} · checklist of trial ${trial}, ${proposal.stage}`, page),
+    ...hanging('Gains', gainsLine(proposal.gains, profile), page),
+    ...hanging('Move', trialText(proposal, profile), page),
     '',
-    checklistText(list, profile, width),
+    checklistText(list, profile, page),
     '',
-    'Ticked by ______________________   at ____________',
-    '',
-  ].join('\n');
+  ];
+  return set(lines, page);
 }

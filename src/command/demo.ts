@@ -3,19 +3,19 @@ import type { TrialReading } from '../coach/step.ts';
 import type { LearntModel } from '../learn/learnt.ts';
 import { responseOf } from '../mechanism/plant-of.ts';
 import type { Profile } from '../mechanism/profile.ts';
-import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
+import { amount, milliseconds, moveText, percent, seconds, speedText } from '../report/amounts.ts';
+import { heading, type Page, set, spelt, table, wrapped } from '../report/page.ts';
+import { outcomeText, proposalText } from '../report/proposal.ts';
 import { simulatedMechanismOf } from '../trial/simulate.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { tuneDocument } from './documents.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { unusable } from './failure.ts';
 import { findProfile } from './find-profile.ts';
-import { modelParametersOf, modelWords } from './model-text.ts';
-import { columned, heading, spelt, wrapped } from './page.ts';
 import { runTrials } from './run-trials.ts';
 import { simulatedPlant } from './sim-plant.ts';
-import { outcomeText, proposalText, readingText, type TrialPage } from './trial-page.ts';
+import { readingText } from './trial-page.ts';
 
 export const definition: CommandDefinition = {
   examples: [
@@ -45,11 +45,10 @@ async function demo(name: string, context: CommandContext): Promise<ExitCode> {
     );
   }
   const seed = context.seed ?? 1;
-  const page: TrialPage = { profile, width: context.width, style: context.style };
   const story = (text: string) => {
     if (!context.json) context.edge.out(`${spelt(text, context.style)}\n\n`);
   };
-  story(openingText(page));
+  story(openingText(profile, context));
   const whys: string[] = [];
   const end = await runTrials({
     history: { profile, trials: [], maxTrials: 12, minutesLeft: null, seed },
@@ -61,8 +60,8 @@ async function demo(name: string, context: CommandContext): Promise<ExitCode> {
       whys.push(proposal.why);
     },
     tell: (event) => {
-      if (event.kind === 'proposed') story(proposalText(event.proposal, event.trial, page));
-      else story(readingText(event.record, event.reading, page));
+      if (event.kind === 'proposed') story(proposalText(event.proposal, event.trial, profile, context));
+      else story(readingText(event.record, event.reading, profile, context));
     },
     interrupted: context.edge.interrupted,
   });
@@ -77,14 +76,14 @@ async function demo(name: string, context: CommandContext): Promise<ExitCode> {
     json: () => tuneDocument(profile.name, outcome, trials.flat(), reading.learnt),
     text: () => {
       const told = [
-        outcomeText(outcome, end.history.trials.length, page),
+        outcomeText(outcome, end.history.trials.length, profile, context),
         '',
-        ...comparison(profile, reading.learnt, responseOf(behind)),
+        ...comparison(profile, reading.learnt, responseOf(behind), context),
         '',
         ...closingLines(profile, context),
         '',
       ];
-      return spelt(told.join('\n'), context.style);
+      return set(told, context);
     },
   });
   return outcome.met ? EXIT.done : EXIT.answerIsNo;
@@ -109,54 +108,56 @@ function machineBehind(profile: Profile): Profile {
   };
 }
 
-function openingText({ profile, width, style }: TrialPage): string {
-  const { target, unit } = profile;
-  const amount = (value: number) => formatQuantity(value, unit);
-  const moves = target.moves.map(([from, to]) => `${amount(from)} → ${amount(to)}`).join(' and ');
+function openingText(profile: Profile, page: Page): string {
+  const { target } = profile;
+  const moves = target.moves.map(([from, to]) => moveText({ from, to }, profile)).join(' and ');
+  const heavier = percent(100 * (BEHIND.mass - 1));
+  const rubs = percent(100 * (BEHIND.friction - 1));
   return [
-    heading(`Holdfast demo · ${profile.title}`, width, style),
+    heading(`Holdfast demo · ${profile.title}`, page),
     ...wrapped(
-      `Invented and simulated: nothing moves, and nothing is written. The machine behind it is ${Math.round(100 * (BEHIND.mass - 1))} % heavier than its sheet says and rubs ${Math.round(100 * (BEHIND.friction - 1))} % more, as machines do; the trials have to find that out. No gain shown here is fit for a real machine.`,
-      width,
+      `Invented and simulated: nothing moves, and nothing is written. The machine behind it is ${heavier} heavier than its sheet says and rubs ${rubs} more, as machines do; the trials have to find that out. No gain shown here is fit for a real machine.`,
+      page.width,
     ),
     '',
     ...wrapped(
-      `Target: within ${amount(target.tolerance)}, at most ${formatNumber(target.overshoot, 2)} % overshoot, settled in ${formatNumber(target.settlingTime, 2)} s, on ${moves}. Each trial below says first what it tries, why, and what to expect; then what came of it.`,
-      width,
+      `Target: within ${amount(target.tolerance, profile)}, at most ${percent(target.overshoot)} overshoot, settled in ${seconds(target.settlingTime)}, on ${moves}. Each trial below says first what it tries, why, and what to expect; then what came of it.`,
+      page.width,
     ),
   ].join('\n');
 }
 
 /** The sheet, what the trials taught, and what the machine really is: side by side. */
-function comparison(profile: Profile, learnt: LearntModel | null, truth: ResponseModel | null): readonly string[] {
+function comparison(
+  profile: Profile,
+  learnt: LearntModel | null,
+  truth: ResponseModel | null,
+  page: Page,
+): readonly string[] {
   const sheet = responseOf(profile);
   if (learnt === null || truth === null || sheet === null) return [];
-  const words = modelWords(profile);
-  const rows = modelParametersOf(profile)
-    .filter((name) => name !== 'breakaway' && name !== 'delay')
-    .map((name) => {
-      const [label, show] = words[name];
-      const { best, low, high } = learnt.intervals[name];
-      return [label, show(sheet[name]), show(best), `${show(low)} to ${show(high)}`, show(truth[name])];
-    });
-  const head = ['', 'sheet', 'learnt', '95 % interval', 'true'];
-  return [
-    'What the trials found out',
-    ...columned([head, ...rows], ['left', 'right', 'right', 'left', 'right']).map((line) => `  ${line}`),
+  const row = (label: string, name: 'topSpeed' | 'lag' | 'drag' | 'hold', show: (value: number) => string) => {
+    const { best, low, high } = learnt.intervals[name];
+    return [`  ${label}`, show(sheet[name]), show(best), `${show(low)} to ${show(high)}`, show(truth[name])];
+  };
+  const share = (value: number) => percent(100 * value);
+  const carries = profile.kind === 'lift' || profile.kind === 'arm';
+  const rows = [
+    ['', 'sheet', 'learnt', '95 % interval', 'true'],
+    row('top speed', 'topSpeed', (value) => speedText(value, profile)),
+    row('lag', 'lag', milliseconds),
+    row('drag', 'drag', share),
+    ...(carries ? [row('hold', 'hold', share)] : []),
   ];
+  return ['What the trials found out', ...table(rows, ['left', 'right', 'right', 'left', 'left'], page)];
 }
 
-function closingLines(profile: Profile, { width }: CommandContext): readonly string[] {
+function closingLines(profile: Profile, page: Page): readonly string[] {
   const rows = [
-    [`holdfast new my-${profile.name} --from ${profile.name}`, 'a profile of your own to fill in'],
-    [`holdfast checklist ${profile.name}`, 'what is ticked before each powered trial'],
-    ['holdfast read LOG', 'what one of your own logs shows'],
+    [`  holdfast new my-${profile.name} --from ${profile.name}`, 'a profile of your own to fill in'],
+    [`  holdfast checklist ${profile.name}`, 'what is ticked before each powered trial'],
+    ['  holdfast read LOG', 'what one of your own logs shows'],
   ];
   const warning = 'These gains belong to an invented mechanism: none of them is fit for a real machine.';
-  return [
-    ...wrapped(warning, width),
-    '',
-    'From here',
-    ...columned(rows, ['left', 'left']).flatMap((line) => wrapped(`  ${line}`, width)),
-  ];
+  return [...wrapped(warning, page.width), '', 'From here', ...table(rows, ['left', 'left'], page)];
 }

@@ -1,13 +1,13 @@
 import { fullOutput, type Gains } from '../controller/settings.ts';
 import { plantWith } from '../mechanism/plant-of.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
-import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import type { Samples } from '../record/samples.ts';
+import { amount, percent, seconds } from '../report/amounts.ts';
+import { type Page, table } from '../report/page.ts';
 import { type Figures, figuresOf } from '../trial/figures.ts';
 import { readingOf, simulateTrial } from '../trial/simulate.ts';
 import { figuresDocument } from './documents.ts';
-import { columned } from './page.ts';
 
 type FigureName = keyof ReturnType<typeof figuresDocument>;
 type Spread = readonly [best: number | null, low: number | null, high: number | null];
@@ -67,24 +67,20 @@ function figuresOn(profile: Profile, response: ResponseModel, trial: Rehearsed, 
   });
 }
 
-/** The expected figures against the target, a line each. */
-export function expectedLines(figures: FigureSpread, profile: Profile): readonly string[] {
-  const seconds = (value: number) => `${formatNumber(value, 2)} s`;
-  const percent = (value: number) => `${formatNumber(value, 2)} %`;
-  const amount = (value: number) => formatQuantity(value, profile.unit, profile.sensor?.resolution ?? 0);
+/** The expected figures against the target, a row each. */
+export function expectedLines(figures: FigureSpread, profile: Profile, page: Page): readonly string[] {
   const { target } = profile;
-  const row = (name: string, spread: Spread, show: (value: number) => string, target = '') => {
+  const length = (value: number) => amount(value, profile);
+  const row = (name: string, spread: Spread, show: (value: number) => string, bound = '') => {
     const told = (value: number | null) => (value === null ? 'never' : show(value));
-    return [name, told(spread[0]), `${told(spread[1])} to ${told(spread[2])}`, target];
+    return [name, told(spread[0]), `${told(spread[1])} to ${told(spread[2])}`, bound];
   };
-  return columned(
-    [
-      ['', 'best', 'nine times in ten', 'target'],
-      row('rise time', figures.riseTime, seconds),
-      row('overshoot', figures.overshoot, percent, `at most ${percent(target.overshoot)}`),
-      row('settling time', figures.settlingTime, seconds, `at most ${seconds(target.settlingTime)}`),
-      row('resting error', figures.restingError, amount, `within ${amount(target.tolerance)}`),
-    ],
-    ['left', 'right', 'left', 'left'],
-  );
+  const rows = [
+    ['', 'best', 'nine times in ten', 'target'],
+    row('rise time', figures.riseTime, seconds),
+    row('overshoot', figures.overshoot, percent, `at most ${percent(target.overshoot)}`),
+    row('settling time', figures.settlingTime, seconds, `at most ${seconds(target.settlingTime)}`),
+    row('resting error', figures.restingError, length, `within ${length(target.tolerance)}`),
+  ];
+  return table(rows, ['left', 'right', 'left', 'left'], page);
 }

@@ -8,13 +8,13 @@ import { answersTo } from '../learn/output-error.ts';
 import type { LogReading } from '../log/read.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
+import { modelTable } from '../report/model.ts';
+import { hanging, set, wrapped } from '../report/page.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { modelDocument } from './documents.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { addLogOptions, columnsText, type LogOptions, readOptionsOf } from './log-options.ts';
-import { learntLines } from './model-text.ts';
 import { openLog } from './open-log.ts';
-import { hanging, spelt, wrapped } from './page.ts';
 import { plainProfile, unitlessText } from './plain-profile.ts';
 import { withProgress } from './progress.ts';
 
@@ -77,7 +77,7 @@ async function fitLogs(files: readonly string[], options: FitOptions, context: C
   const result: Fit = { logs, profile, evidence, learnt, unitNamed: plain?.unitNamed ?? true, warnings };
   present(context, {
     json: () => fitDocument(result),
-    text: () => spelt(fitText(result, context), context.style),
+    text: () => fitText(result, context),
   });
   return learnt.usable ? EXIT.done : EXIT.answerIsNo;
 }
@@ -103,42 +103,36 @@ function fitDocument({ logs, profile, learnt, unitNamed, warnings }: Fit): Reado
   };
 }
 
-function fitText(result: Fit, context: CommandContext): string {
-  const { logs, profile, learnt, unitNamed, warnings } = result;
-  const { width, style } = context;
+function fitText({ warnings, ...result }: Fit, page: CommandContext): string {
+  const { logs, profile, learnt, unitNamed } = result;
   const say = unitNamed ? (text: string) => text : unitlessText;
   const names = logs.map(({ file }) => basename(file)).join(', ');
   const answer = learnt.usable
     ? `the model explains ${formatNumber(learnt.fit ?? 0, 3)} % of the motion.`
     : 'no model that can be relied on.';
   const [first] = logs;
-  const full = `${profile.controller.output.max} ${FULL_WORDS[profile.controller.output.unit]}`;
-  return [
-    ...wrapped(`${names}: ${answer}`, width),
+  const { max, unit } = profile.controller.output;
+  const lines = [
+    ...wrapped(`${names}: ${answer}`, page.width),
     '',
-    ...(first ? wrapped(columnsText(first), width) : []),
-    ...warnings.map((warning) => hanging('Note', warning, width)),
+    ...(first ? wrapped(columnsText(first), page.width) : []),
+    ...warnings.flatMap((warning) => hanging('Note', warning, page)),
     '',
-    `Best estimate and 95 % interval, at full output (${full})`,
-    ...learntLines(learnt, profile).map((line) => `  ${say(line)}`),
-    ...(learnt.unlearnt.length === 0 ? [] : ['', hanging('Unknown', unlearntText(learnt), width)]),
-    ...chartLines(result, say, width, style),
+    `Full output is ${max} ${FULL_WORDS[unit]}.`,
+    say(modelTable(learnt, profile, page)),
+    ...chartLines(result, say, page),
     '',
-  ].join('\n');
+  ];
+  return set(lines, page);
 }
 
 const FULL_WORDS = { fraction: 'as a fraction', percent: '%', volts: 'V' } as const;
 
-function unlearntText({ unlearnt }: LearntModel): string {
-  return `these logs cannot tell ${unlearnt.join(', ')}: log a move that starts from rest and one that coasts or holds.`;
-}
-
 /** The first log's measured course with the model's answer to the same output. */
 function chartLines(
-  { logs, profile, evidence, learnt }: Fit,
+  { logs, profile, evidence, learnt }: Omit<Fit, 'warnings'>,
   say: (text: string) => string,
-  width: number,
-  style: CommandContext['style'],
+  { width, style }: CommandContext,
 ): readonly string[] {
   const [first] = evidence;
   const drive = first ? driveOf(first, profile) : 'too short';

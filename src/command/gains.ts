@@ -9,12 +9,12 @@ import {
 } from '../controller/forms.ts';
 import { fullOutput, type GainForm, type OutputUnit, type TimeBase } from '../controller/settings.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
+import { set, table } from '../report/page.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
 import { positive } from './numbers.ts';
-import { columned, spelt } from './page.ts';
 import { addGainOptions, gainsTyped, type TypedGains } from './typed-gains.ts';
 
 interface GainsOptions extends TypedGains {
@@ -89,7 +89,7 @@ async function gains(name: string, options: GainsOptions, context: CommandContex
       convention,
       entered: Object.fromEntries(entries.map(({ label, value, unit }) => [label, { value, unit }])),
     }),
-    text: () => spelt(gainsText(entries, convention, fullOutput(profile.controller)), context.style),
+    text: () => set(gainsLines(entries, convention, fullOutput(profile.controller), context), context),
   });
   return EXIT.done;
 }
@@ -103,10 +103,19 @@ function fullIn(unit: OutputUnit, own: Convention, volts: number | null): number
   throw wrongUse('How many volts full output is, is not known.', 'Say it with --full, such as --full 12.');
 }
 
-function gainsText(entries: readonly GainLine[], convention: Convention, own: number): string {
+function gainsLines(
+  entries: readonly GainLine[],
+  convention: Convention,
+  own: number,
+  page: CommandContext,
+): readonly string[] {
   const { form, timeBase, outputUnit, fullOutput: full, period } = convention;
   const head = `${form} form, times in ${timeBase}${timeBase === 'ticks' ? ` of ${period} s` : ''}, output as ${outputUnit} up to ${full}`;
-  const rows = entries.map(({ label, value, unit }) => [label, value === null ? 'off' : formatNumber(value, 5), unit]);
+  const rows = entries.map(({ label, value, unit }) => [
+    `  ${label}`,
+    value === null ? 'off' : formatNumber(value, 5),
+    unit,
+  ]);
   const note = full === own ? [] : ['', `Full output ${full} there is full output ${own} in the profile.`];
-  return [head, ...columned(rows, ['left', 'right', 'left']).map((line) => `  ${line}`), ...note, ''].join('\n');
+  return [head, ...table(rows, ['left', 'right', 'left'], page), ...note, ''];
 }

@@ -1,8 +1,8 @@
 import { addProfile, openStore, profilePath } from '../profile/store.ts';
+import { hanging, set } from '../report/page.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { findProfile, profilesFolder } from './find-profile.ts';
-import { hanging, spelt } from './page.ts';
 
 interface NewOptions {
   readonly from: string;
@@ -35,15 +35,14 @@ async function copy(name: string, options: NewOptions, context: CommandContext):
       : 'Check what differs from the one it was copied from.';
   present(context, {
     json: () => ({ format: 'holdfast/new-result@1', profile: name, file, from: profile.name }),
-    text: () =>
-      spelt(
-        `${[
-          hanging('Copied', `${profile.name} to ${file}`, context.width),
-          hanging('Next', advice, context.width),
-          hanging('', `Then: holdfast tune ${name} --plant sim`, context.width),
-        ].join('\n')}\n`,
-        context.style,
-      ),
+    text: () => {
+      const lines = [
+        ...hanging('Copied', `${profile.name} to ${file}`, context),
+        ...hanging('Next', advice, context),
+        ...hanging('', `Then: holdfast tune ${name} --plant sim`, context),
+      ];
+      return `${set(lines, context)}\n`;
+    },
   });
   return EXIT.done;
 }

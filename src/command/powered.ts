@@ -1,11 +1,11 @@
 import type { Profile } from '../mechanism/profile.ts';
 import { profileDigest } from '../profile/store.ts';
+import { heading, set, spelt, wrapped } from '../report/page.ts';
 import { type GateRequest, openGate } from '../safety/gate.ts';
 import type { Checklist, GateRefusal, Signature } from '../safety/hazard.ts';
-import { afterPart, briefingText, trialLine } from './checklist-text.ts';
+import { afterwards, briefing, trialText } from './checklist-text.ts';
 import type { CommandContext } from './command.ts';
 import { type Failure, refused } from './failure.ts';
-import { heading, spelt, wrapped } from './page.ts';
 import { dangersOf, type TrialDangers } from './planned-trial.ts';
 import type { Admission, AskedTrial } from './run-trials.ts';
 
@@ -53,10 +53,10 @@ export function poweredAdmission(
     const fixed = fixedRefusals(request);
     if (fixed.length > 0) return { open: false, failure: refusal(trial, fixed) };
     if (!edge.terminal.input || !edge.terminal.errors) return { open: false, failure: nobodyThere(trial) };
-    const say = (text: string) => edge.err(`${spelt(text, context.style)}\n`);
-    say(heading(`Trial ${trial}: checklist before power`, context.width, context.style));
-    say(wrapped(trialLine(proposal, profile), context.width).join('\n'));
-    say(`\n${briefingText(dangers.checklist, profile, context.width)}\n`);
+    const say = (...lines: readonly string[]) => edge.err(`${set(lines, context)}\n`);
+    say(heading(`Trial ${trial}: checklist before power`, context));
+    say(...wrapped(trialText(proposal, profile), context.width), '');
+    say(...briefing(dangers.checklist, profile, context), '');
     const answer = await ticked(dangers.checklist, lastName, context);
     if (answer === null || edge.interrupted.aborted) return { open: 'interrupted' };
     lastName = answer.name;
@@ -64,8 +64,8 @@ export function poweredAdmission(
     const signature = { ...answer, at: edge.now(), outputCap, profileDigest };
     const opening = openGate({ ...request, signature, now: edge.now() });
     if (!opening.open) return { open: false, failure: refusal(trial, opening.reasons) };
-    say(`\nSigned by ${signature.name}. Trial ${trial} runs now.`);
-    say(`${afterPart(dangers.checklist, context.width).join('\n')}\n`);
+    say('', `Signed by ${signature.name}. Trial ${trial} runs now.`);
+    say(...afterwards(dangers.checklist, context), '');
     return { open: true, permit: opening.permit };
   };
 }

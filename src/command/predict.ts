@@ -12,6 +12,12 @@ import type { Move, Profile } from '../mechanism/profile.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import type { Band } from '../record/band.ts';
+import { moveText } from '../report/amounts.ts';
+import { gainsLine } from '../report/gains.ts';
+import { marginsText } from '../report/margins.ts';
+import { hanging, heading, set } from '../report/page.ts';
+import { verdictLines } from '../report/verdicts.ts';
+import { capWords } from '../safety/readback.ts';
 import { readTrial } from '../trial/reading.ts';
 import type { Verdict } from '../trial/verdict.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
@@ -20,13 +26,11 @@ import { EXIT, type ExitCode } from './edge.ts';
 import { expectedFigures, expectedLines, type FigureSpread, rehearse } from './expected.ts';
 import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
-import { capText, gainsLine } from './gains-text.ts';
 import { addLogOptions, type LogOptions, readOptionsOf } from './log-options.ts';
 import { openLog } from './open-log.ts';
-import { hanging, heading, spelt } from './page.ts';
 import { knownResponses } from './planned-trial.ts';
 import { withProgress } from './progress.ts';
-import { marginsLine } from './trial-page.ts';
+import { CHART_ROWS } from './trial-page.ts';
 import { addGainOptions, gainsTyped, type TypedGains } from './typed-gains.ts';
 
 interface PredictOptions extends LogOptions, TypedGains {
@@ -92,7 +96,7 @@ async function predictResponse(name: string, options: PredictOptions, context: C
   const result = predictedOf(profile, gains, move, best, responses, learnt, seed);
   present(context, {
     json: () => predictDocument(result),
-    text: () => spelt(predictText(result, context), context.style),
+    text: () => predictText(result, context),
   });
   return EXIT.done;
 }
@@ -182,41 +186,48 @@ function predictDocument({ gains, figures, margins, band }: Predicted): Readonly
   };
 }
 
-function predictText(result: Predicted, { width, style }: CommandContext): string {
-  const { profile, gains, move, band, margins, worst } = result;
+function predictText(result: Predicted, page: CommandContext): string {
+  const { profile, gains, move, band, worst } = result;
   const chart = promiseChart(band, {
     title: 'the response to expect, nine times in ten',
     unit: profile.unit,
     band: null,
     tolerance: profile.target.tolerance,
     to: move.to,
-    width,
-    height: 15,
+    width: page.width,
+    height: CHART_ROWS,
     span: null,
   });
-  const settles = result.figures.settlingTime;
+  const [settles] = result.figures.settlingTime;
   const answer =
-    settles[0] === null
+    settles === null
       ? 'It is not expected to settle.'
-      : `It should settle in ${formatNumber(settles[0], 2)} s; the target is ${formatNumber(profile.target.settlingTime, 2)} s.`;
-  const unstable =
-    margins.spectralRadius >= 1 ? ['', hanging('Unstable', 'the linear loop grows at these gains.', width)] : [];
-  return [
+      : `It should settle in ${formatNumber(settles, 2)} s; the target is ${formatNumber(profile.target.settlingTime, 2)} s.`;
+  const cap = capWords(profile.limits.outputCap, profile);
+  const lines = [
     `${profile.title}: ${answer}`,
     '',
-    hanging('Gains', gainsLine(gains, profile), width),
-    hanging('Move', `${move.from} → ${move.to} ${profile.unit}, ${capText(profile.limits.outputCap, profile)}`, width),
-    hanging('From', `${result.from}, over ${band.time.length} ticks`, width),
-    ...unstable,
+    ...hanging('Gains', gainsLine(gains, profile), page),
+    ...hanging('Move', `${moveText(move, profile)}, output at most ${cap}`, page),
+    ...hanging('From', `${result.from}, over ${band.time.length} ticks`, page),
     '',
-    heading('Promise', width, style),
-    ...drawChart(chart, style),
+    heading('Promise', page),
+    ...drawChart(chart, page.style),
     '',
-    ...expectedLines(result.figures, profile),
+    ...expectedLines(result.figures, profile, page),
     '',
-    ...result.verdicts.map(({ is, because }, k) => hanging(k === 0 ? 'Verdict' : '', `${is}: ${because}`, width)),
-    hanging('Margins', marginsLine(margins), width),
-    ...(worst === null ? [] : [hanging('Worst', marginsLine(worst), width)]),
+    verdictLines(result.verdicts, page),
+    marginsText(result.margins, page),
+    ...(worst === null ? [] : hanging('At worst', worstText(worst), page)),
     '',
-  ].join('\n');
+  ];
+  return set(lines, page);
+}
+
+/** The margins of the least forgiving of all that the machine may be. */
+function worstText({ gain, phase, delay, spectralRadius }: Margins): string {
+  if (!(spectralRadius < 1)) return 'one machine in the band swings wider and wider at these gains.';
+  const said = (value: number | null, unit: string) =>
+    value === null ? 'no limit' : `${formatNumber(value, 2)}${unit}`;
+  return `gain × ${said(gain, '')}, phase ${said(phase, '°')}, ${said(delay === null ? null : 1000 * delay, ' ms')} of delay.`;
 }

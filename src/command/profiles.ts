@@ -1,11 +1,11 @@
 import type { Profile } from '../mechanism/profile.ts';
 import { listProfiles, openStore } from '../profile/store.ts';
+import { gainsLine } from '../report/gains.ts';
+import { hanging, type Page, set, table } from '../report/page.ts';
 import { type CommandContext, type CommandDefinition, present } from './command.ts';
 import { EXIT, type ExitCode } from './edge.ts';
 import { explain } from './explain.ts';
 import { profilesFolder, starters } from './find-profile.ts';
-import { gainsLine } from './gains-text.ts';
-import { columned, hanging, spelt } from './page.ts';
 
 export const definition: CommandDefinition = {
   examples: [
@@ -44,23 +44,28 @@ async function profiles(context: CommandContext): Promise<ExitCode> {
               untuned(stored.profile) ? 'no gains yet' : gainsLine(stored.profile.gains, stored.profile),
             ],
       );
-      const own = rows.length === 0 ? ['  none yet: holdfast new NAME --from STARTER copies one'] : indented(rows);
+      const own =
+        rows.length === 0 ? ['  none yet: holdfast new NAME --from STARTER copies one'] : indented(rows, context);
       const kinds = ships.map(({ name, title, kind, quantity }) => [name, title, `${kind}, ${quantity}`]);
       const text = [
-        hanging('In', folder, context.width, 3),
+        ...hanging('In', folder, context, 3),
         ...own,
         '',
         'Starters, invented, to copy from',
-        ...indented(kinds),
+        ...indented(kinds, context),
         '',
       ];
-      return spelt(text.join('\n'), context.style);
+      return set(text, context);
     },
   });
   return EXIT.done;
 }
 
-const indented = (rows: readonly (readonly string[])[]) =>
-  columned(rows, ['left', 'left', 'left']).map((line) => `  ${line}`);
+const indented = (rows: readonly (readonly string[])[], page: Page) =>
+  table(
+    rows.map(([name = '', ...more]) => [`  ${name}`, ...more]),
+    ['left', 'left', 'left'],
+    page,
+  );
 
 const facts = ({ name, title, kind, quantity, unit }: Profile) => ({ name, title, kind, quantity, unit });

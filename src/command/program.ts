@@ -1,12 +1,12 @@
 import { Command, CommanderError } from 'commander';
 import type { Style } from '../chart/spec.ts';
+import { type Page, spelt, table, wrapped } from '../report/page.ts';
 import type { CommandContext, Example, ListedCommand, Runner } from './command.ts';
 import { COMMANDS } from './commands.ts';
 import { type Edge, EXIT, type ExitCode } from './edge.ts';
 import { explain } from './explain.ts';
 import { errorDocument, errorText, wrongUse } from './failure.ts';
 import { wholeNumber } from './numbers.ts';
-import { columned, spelt, wrapped } from './page.ts';
 import { pageWidth, styleOf } from './style.ts';
 import { VERSION } from './version.ts';
 
@@ -68,7 +68,7 @@ async function withoutCommand(program: Command, edge: Edge, openConsole: OpenCon
   if (edge.terminal.input && edge.terminal.output && !context.json) return openConsole(context);
   if (context.json)
     return tell(wrongUse('No command was given.', 'holdfast --help lists the commands.'), true, context.style, edge);
-  edge.err(spelt(program.helpInformation() + closingText(context.width), context.style));
+  edge.err(spelt(program.helpInformation() + closingText(context), context.style));
   return EXIT.wrongUse;
 }
 
@@ -113,7 +113,7 @@ function programOf(edge: Edge, style: Style, done: (code: ExitCode) => void): Co
     })
     .helpCommand('help [command]', 'print this page, or a command’s')
     .exitOverride()
-    .addHelpText('after', closingText(width));
+    .addHelpText('after', closingText({ width, style }));
   for (const listed of COMMANDS) addBare(program, listed);
   program.hook('preSubcommand', async (_program, command) => {
     const listed = COMMANDS.find(({ name }) => name === command.name());
@@ -147,9 +147,9 @@ function contextOf(program: Command, edge: Edge): CommandContext {
   };
 }
 
-function closingText(width: number): string {
-  const examples = columned(EXAMPLES, ['left', 'left']).map((line) => `  ${line}`);
-  return ['', 'Examples:', ...examples, '', ...wrapped(EXITS, width)].join('\n');
+function closingText(page: Page): string {
+  const rows = EXAMPLES.map(([line, does]) => [`  ${line}`, does]);
+  return ['', 'Examples:', ...table(rows, ['left', 'left'], page), '', ...wrapped(EXITS, page.width)].join('\n');
 }
 
 function exampleText(examples: readonly Example[]): string {

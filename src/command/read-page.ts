@@ -3,12 +3,14 @@ import { outputChart, trialChart } from '../chart/trial-chart.ts';
 import type { LogReading } from '../log/read.ts';
 import type { LoggedMove } from '../log/split.ts';
 import type { Profile } from '../mechanism/profile.ts';
-import { formatNumber, formatQuantity } from '../mechanism/quantity.ts';
+import { formatNumber } from '../mechanism/quantity.ts';
+import { moveText, percent, seconds } from '../report/amounts.ts';
+import { figuresTable } from '../report/figures.ts';
+import { hanging, heading, type Page, set, table, wrapped } from '../report/page.ts';
+import { verdictLines } from '../report/verdicts.ts';
 import type { Reading } from '../trial/reading.ts';
-import type { CommandContext } from './command.ts';
-import { figureLines } from './figures-text.ts';
 import { columnsText } from './log-options.ts';
-import { columned, hanging, heading, wrapped } from './page.ts';
+import { CHART_ROWS } from './trial-page.ts';
 
 /** One move of a log with what it shows. */
 export interface ReadMove {
@@ -36,26 +38,27 @@ const MOST_DRAWN = 4;
  *
  * @param only number of the one move to show, from 1; null = all, or a list of them when there are many
  */
-export function readText(page: ReadPage, only: number | null, context: CommandContext): string {
-  const { log, moves, say } = page;
-  const { width } = context;
+export function readText(read: ReadPage, only: number | null, page: Page): string {
+  const { log, moves, say } = read;
   const often = log.period > 0 ? `, ${formatNumber(1 / log.period, 3)} rows a second` : '';
-  const notes = [...log.repairs, ...log.warnings, ...page.assumed];
+  const notes = [...log.repairs, ...log.warnings, ...read.assumed];
   const shown = moves
     .map((one, k) => ({ one, number: k + 1 }))
     .filter(({ number }) => only === null || number === only);
-  const drawn = shown.length <= MOST_DRAWN;
-  return [
-    ...wrapped(`${log.file}: ${say(headline(moves))}`, width),
+  const parts =
+    shown.length <= MOST_DRAWN
+      ? shown.flatMap(({ one, number }) => ['', ...moveLines(one, number, read, page)])
+      : listLines(read, page);
+  const lines = [
+    ...wrapped(`${log.file}: ${say(headline(moves))}`, page.width),
     '',
-    ...wrapped(`${log.rows} rows over ${formatNumber(log.duration, 3)} s${often}.`, width),
-    ...wrapped(columnsText(log), width),
-    ...notes.map((note) => hanging('Note', note, width)),
-    ...(drawn
-      ? shown.flatMap(({ one, number }) => ['', ...moveLines(one, number, page, context)])
-      : listLines(page, context)),
+    ...wrapped(`${log.rows} rows over ${formatNumber(log.duration, 3)} s${often}.`, page.width),
+    ...wrapped(columnsText(log), page.width),
+    ...notes.flatMap((note) => hanging('Note', note, page)),
+    ...parts,
     '',
-  ].join('\n');
+  ];
+  return set(lines, page);
 }
 
 /** The answer in a line or two: what weighs most in each move. */
@@ -69,44 +72,33 @@ function headline(moves: readonly ReadMove[]): string {
   return [count, ...moves.map((one, k) => `Move ${k + 1}: ${most(one)}`)].join(' ');
 }
 
-const amountIn = (profile: Profile) => (value: number) =>
-  formatQuantity(value, profile.unit, profile.sensor?.resolution ?? 0);
-
-function listLines({ log, moves, profile, say }: ReadPage, { width }: CommandContext): readonly string[] {
-  const amount = amountIn(profile);
+function listLines({ log, moves, profile, say }: ReadPage, page: Page): readonly string[] {
   const rows = moves.map(({ move, reading }, k) => {
     const { settlingTime, overshoot } = reading.figures;
     return [
       String(k + 1),
       `${formatNumber(log.samples.time[move.start] ?? 0, 4)} s`,
-      say(`${amount(move.from)} → ${amount(move.to)}`),
-      settlingTime === null ? 'never' : `${formatNumber(settlingTime, 2)} s`,
-      `${formatNumber(overshoot, 2)} %`,
+      say(moveText(move, profile)),
+      settlingTime === null ? 'never' : seconds(settlingTime),
+      percent(overshoot),
       reading.verdicts.map(({ is }) => is).join(', '),
     ];
   });
-  const head = ['move', 'from', 'of', 'settles', 'past', 'verdict'];
-  return [
-    '',
-    ...columned([head, ...rows], ['right', 'right', 'left', 'right', 'right', 'left']).map((line) => clip(line, width)),
-    '',
-    'Show one with --move N.',
-  ];
+  const head = ['move', 'at', 'from and to', 'settles', 'past', 'verdict'];
+  const listed = table([head, ...rows], ['right', 'right', 'left', 'right', 'right', 'left'], page);
+  return ['', ...listed, '', 'Show one with --move N.'];
 }
 
-const clip = (line: string, width: number) => (line.length > width ? `${line.slice(0, width - 1)}…` : line);
-
 const OUTPUT_AXIS = { fraction: 'of full', percent: '%', volts: 'V' } as const;
-const CHART_ROWS = 15;
 const OUTPUT_ROWS = 9;
 
 function moveLines(
   { move, reading }: ReadMove,
   number: number,
   { log, profile, own, say }: ReadPage,
-  { width, style }: CommandContext,
+  page: Page,
 ): readonly string[] {
-  const amount = amountIn(profile);
+  const { width, style } = page;
   const starts = formatNumber(log.samples.time[move.start] ?? 0, 3);
   const chart = trialChart(move.samples, {
     title: 'measured against setpoint',
@@ -120,18 +112,14 @@ function moveLines(
   });
   const outputUnit = OUTPUT_AXIS[profile.controller.output.unit];
   const output = outputChart(move.samples, { width, height: OUTPUT_ROWS, span: null, unit: outputUnit });
+  const verdicts = reading.verdicts.map((verdict) => ({ ...verdict, because: say(verdict.because) }));
   return [
-    heading(say(`Move ${number} · ${amount(move.from)} → ${amount(move.to)} · from ${starts} s`), width, style),
+    heading(say(`Move ${number} · ${moveText(move, profile)} · from ${starts} s`), page),
     ...drawChart(chart, style),
     ...(output === null ? [] : drawChart(output, style)),
     '',
-    ...figureLines(reading.figures, profile, own ? 'target' : 'nothing').map(say),
+    say(figuresTable(reading.figures, profile, own ? 'target' : 'nothing', page)),
     '',
-    ...verdictLines(reading.verdicts, say, width),
+    verdictLines(verdicts, page),
   ];
-}
-
-function verdictLines(verdicts: Reading['verdicts'], say: ReadPage['say'], width: number): readonly string[] {
-  if (verdicts.length === 0) return ['Verdict  nothing out of the ordinary'];
-  return verdicts.map(({ is, because }, k) => hanging(k === 0 ? 'Verdict' : '', `${is}: ${say(because)}`, width));
 }

@@ -11,7 +11,6 @@ import { unusable, wrongUse } from './failure.ts';
 import { addLogOptions, columnsDocument, type LogOptions, readOptionsOf } from './log-options.ts';
 import { wholeNumber } from './numbers.ts';
 import { openLog } from './open-log.ts';
-import { spelt } from './page.ts';
 import { plainProfile, unitlessText } from './plain-profile.ts';
 import { type ReadMove, type ReadPage, readText } from './read-page.ts';
 
@@ -71,7 +70,7 @@ async function read(file: string, options: ReadCommandOptions, context: CommandC
   checkMove(options.move, moves.length);
   present(context, {
     json: () => readDocument(log, moves, basis),
-    text: () => spelt(readText({ log, moves, ...basis }, options.move ?? null, context), context.style),
+    text: () => readText({ log, moves, ...basis }, options.move ?? null, context),
   });
   const settled = moves.every(({ reading }) => (basis.own ? reading.meets : reading.figures.settlingTime !== null));
   return settled ? EXIT.done : EXIT.answerIsNo;

@@ -1,6 +1,9 @@
 import { nextStep } from '../coach/next-step.ts';
 import type { Proposal, RunReading } from '../coach/step.ts';
 import type { Profile } from '../mechanism/profile.ts';
+import { modelTable } from '../report/model.ts';
+import { hanging, set, spelt } from '../report/page.ts';
+import { outcomeText, proposalText } from '../report/proposal.ts';
 import type { CommandContext, CommandDefinition } from './command.ts';
 import { present } from './command.ts';
 import { type KeptTrial as TuneTrial, tuneDocument } from './documents.ts';
@@ -8,13 +11,11 @@ import { EXIT, type ExitCode } from './edge.ts';
 import { Failure, refused } from './failure.ts';
 import { type FoundProfile, findProfile } from './find-profile.ts';
 import { historyOf, openKeeper, type RunKeeper } from './kept-run.ts';
-import { learntLines } from './model-text.ts';
 import { positive, wholeNumber } from './numbers.ts';
-import { hanging, spelt } from './page.ts';
 import { commandPlant, fittedPlant, type PlantWish, physicsPlant, plantWish } from './plants.ts';
 import { poweredAdmission } from './powered.ts';
 import { type RunEnd, runTrials, type TrialPlant } from './run-trials.ts';
-import { outcomeText, proposalText, readingText, type TrialPage } from './trial-page.ts';
+import { readingText } from './trial-page.ts';
 
 interface TuneOptions {
   readonly plant: string;
@@ -66,7 +67,6 @@ async function tune(name: string, options: TuneOptions, context: CommandContext)
   });
   const { seed } = keeper.run();
   const plant = await plantOf(wish, profile, seed, options, context);
-  const page: TrialPage = { profile, width: context.width, style: context.style };
   const story = (text: string) => (context.json ? () => {} : context.edge.out)(`${spelt(text, context.style)}\n\n`);
   tellOpening(keeper, context);
   const begun = context.edge.now();
@@ -83,15 +83,15 @@ async function tune(name: string, options: TuneOptions, context: CommandContext)
     tell: async (event) => {
       if (event.kind === 'proposed') {
         if (context.json) tellProgress(event.trial, event.proposal, context);
-        story(proposalText(event.proposal, event.trial, page));
+        story(proposalText(event.proposal, event.trial, profile, context));
       } else {
         await keeper.read(event.reading);
-        story(readingText(event.record, event.reading, page));
+        story(readingText(event.record, event.reading, profile, context));
       }
     },
     interrupted: context.edge.interrupted,
   });
-  return finish(end, keeper, page, context);
+  return finish(end, keeper, profile, context);
 }
 
 function refuseStarterOnMachine(found: FoundProfile, wish: PlantWish, options: TuneOptions): void {
@@ -131,8 +131,7 @@ function tellProgress(trial: number, { stage }: Proposal, { edge }: CommandConte
   edge.err(`trial ${trial}: ${stage}\n`);
 }
 
-async function finish(end: RunEnd, keeper: RunKeeper, page: TrialPage, context: CommandContext): Promise<ExitCode> {
-  const { profile } = page;
+async function finish(end: RunEnd, keeper: RunKeeper, profile: Profile, context: CommandContext): Promise<ExitCode> {
   const count = end.history.trials.length;
   switch (end.kind) {
     case 'interrupted':
@@ -150,7 +149,7 @@ async function finish(end: RunEnd, keeper: RunKeeper, page: TrialPage, context: 
       const trials = trialsOf(end.history.trials, end.reading, keeper);
       present(context, {
         json: () => tuneDocument(profile.name, end.outcome, trials, end.reading.learnt),
-        text: () => spelt(`${endText(end, keeper, page)}\n`, page.style),
+        text: () => `${endText(end, keeper, profile, context)}\n`,
       });
       return end.outcome.met ? EXIT.done : EXIT.answerIsNo;
     }
@@ -158,19 +157,21 @@ async function finish(end: RunEnd, keeper: RunKeeper, page: TrialPage, context: 
 }
 
 /** The end of a run on paper: gains, reasons, what was learnt, where the logs are, what to do next. */
-function endText(end: RunEnd & { readonly kind: 'stopped' }, keeper: RunKeeper, page: TrialPage): string {
-  const { profile, width } = page;
+function endText(
+  end: RunEnd & { readonly kind: 'stopped' },
+  keeper: RunKeeper,
+  profile: Profile,
+  page: CommandContext,
+): string {
   const { learnt } = end.reading;
-  const taught =
-    learnt === null ? [] : ['Learnt, with 95 % intervals', ...learntLines(learnt, profile).map((line) => `  ${line}`)];
-  return [
-    outcomeText(end.outcome, end.history.trials.length, page),
+  const lines = [
+    outcomeText(end.outcome, end.history.trials.length, profile, page),
     '',
-    ...taught,
-    '',
-    hanging('Logs', keeper.folder, width),
-    hanging('Next', nextText(end, keeper.run().plant, profile), width),
-  ].join('\n');
+    ...(learnt === null ? [] : ['What the trials taught', modelTable(learnt, profile, page), '']),
+    ...hanging('Logs', keeper.folder, page),
+    ...hanging('Next', nextText(end, keeper.run().plant, profile), page),
+  ];
+  return set(lines, page);
 }
 
 function nextText(end: RunEnd & { readonly kind: 'stopped' }, plant: string, profile: Profile): string {

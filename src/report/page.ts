@@ -1,5 +1,5 @@
-import stringWidth from 'string-width';
 import type { Style } from '../chart/spec.ts';
+import { textWidth } from '../record/text-width.ts';
 
 /** What a text is set on. */
 export interface Page {
@@ -19,12 +19,12 @@ export function wrapped(text: string, width: number): readonly string[] {
     const lines: string[] = [];
     let line = '';
     for (const word of paragraph.slice(indent.length).split(' ')) {
-      if (line !== '' && stringWidth(line) + 1 + stringWidth(word) > room) {
+      if (line !== '' && textWidth(line) + 1 + textWidth(word) > room) {
         lines.push(indent + line);
         line = '';
       }
       let rest = word;
-      while (stringWidth(rest) > room) {
+      while (textWidth(rest) > room) {
         const piece = leading(rest, room);
         lines.push(indent + piece);
         rest = rest.slice(piece.length);
@@ -39,7 +39,7 @@ export function wrapped(text: string, width: number): readonly string[] {
 function leading(text: string, width: number): string {
   let piece = '';
   for (const character of text) {
-    if (piece !== '' && stringWidth(piece + character) > width) break;
+    if (piece !== '' && textWidth(piece + character) > width) break;
     piece += character;
   }
   return piece;
@@ -55,7 +55,7 @@ export function hanging(label: string, text: string, { width, style }: Page, ind
 export function heading(text: string, { width, style }: Page): string {
   const dash = style.unicode ? '─' : '-';
   const left = `${dash.repeat(2)} ${text} `;
-  return left + dash.repeat(Math.max(0, width - stringWidth(left)));
+  return left + dash.repeat(Math.max(0, width - textWidth(left)));
 }
 
 /** Rows set in columns, two blanks between, nothing at the ends of lines; the last column is wrapped to the page. */
@@ -66,16 +66,14 @@ export function table(
 ): readonly string[] {
   const rows = said.map((row) => row.map((cell) => spelt(cell, style)));
   const count = Math.max(0, ...rows.map((row) => row.length));
-  const widths = Array.from({ length: count }, (_, k) => Math.max(0, ...rows.map((row) => stringWidth(row[k] ?? ''))));
+  const widths = Array.from({ length: count }, (_, k) => Math.max(0, ...rows.map((row) => textWidth(row[k] ?? ''))));
   const before = widths.slice(0, -1).reduce((sum, size) => sum + size + 2, 0);
   const room = Math.max(12, width - before);
   return rows.flatMap((row) => {
     const cells = Array.from({ length: count }, (_, k) => row[k] ?? '');
     const [first = '', ...more] = wrapped(cells.at(-1) ?? '', room);
     const line = [...cells.slice(0, -1), first].map((cell, k) => {
-      const blank = ' '.repeat(
-        Math.max(0, Math.min(widths[k] ?? 0, k === count - 1 ? room : width) - stringWidth(cell)),
-      );
+      const blank = ' '.repeat(Math.max(0, Math.min(widths[k] ?? 0, k === count - 1 ? room : width) - textWidth(cell)));
       return align[k] === 'right' ? blank + cell : cell + blank;
     });
     return [line.join('  ').trimEnd(), ...more.map((text) => ' '.repeat(before) + text)];

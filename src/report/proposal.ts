@@ -23,8 +23,8 @@ export function proposalText(proposal: Proposal, trial: number, profile: Profile
     ),
     ...line('Why', proposal.why),
     ...(boundedBy === null ? [] : line('Held by', `${boundedBy}.`)),
-    ...line('Expect', proposal.expect),
-    ...line('Unless', proposal.unless),
+    ...line('Promise', proposal.expect),
+    ...line('Watch', proposal.unless),
   ];
   return set(lines, page);
 }
