@@ -85,7 +85,7 @@ function openSigma({ measured, floor }: Drive): number {
 }
 
 /** Size and independence of what a model leaves, trials of one quantity together. */
-export function weighingAt(problem: Problem, parameters: Float64Array): Weighing {
+function weighingAt(problem: Problem, parameters: Float64Array): Weighing {
   const { drives } = problem;
   const answers = problem.answers.of(problem.modelAt(parameters));
   const all = leftoverOf(drives, answers);

@@ -106,7 +106,7 @@ export function covarianceOf(jacobian: Columns, variance: number): Float64Array 
 }
 
 /** Jacobian of the residuals by differences, into `jacobian`. */
-export function differentiate(
+function differentiate(
   jacobian: Columns,
   residualsOf: Residuals,
   at: Float64Array,

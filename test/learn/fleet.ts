@@ -1,5 +1,3 @@
-import { readFileSync } from 'node:fs';
-import { join } from 'node:path';
 import { fullOutput, type Gains } from '../../src/controller/settings.ts';
 import type { TrialEvidence } from '../../src/learn/learnt.ts';
 import { plantWith, responseOf } from '../../src/mechanism/plant-of.ts';
@@ -8,6 +6,7 @@ import type { PlantModel, ResponseModel } from '../../src/plant/response-model.t
 import type { Samples } from '../../src/record/samples.ts';
 import { normalNumbers } from '../../src/trial/chance.ts';
 import { readingOf, simulateTrial } from '../../src/trial/simulate.ts';
+import { starter } from '../fixtures/starters.ts';
 
 /** A mechanism that answers as the response model says, off its nameplate by as much as the prior expects, or of unknown make. */
 export interface Member {
@@ -26,10 +25,6 @@ export interface Planned {
 
 const NAMES = ['lift', 'drivetrain', 'arm', 'roller', 'turret', 'wrist'] as const;
 
-export function starterProfile(name: string): Profile {
-  return JSON.parse(readFileSync(join(import.meta.dirname, '../../profiles', `${name}.json`), 'utf8'));
-}
-
 /** The generator's state starts nearly empty, and its first numbers are far out for every seed: they are passed over. */
 function chancesOf(seed: number, count: number): Float64Array {
   return normalNumbers(seed, PASSED_OVER + count).subarray(PASSED_OVER);
@@ -42,7 +37,7 @@ export function memberOf(index: number, seed: number): Member {
   const name = NAMES[index % NAMES.length] ?? 'lift';
   const own = 1000 * seed + index;
   const n = chancesOf(own, 16);
-  const base = starterProfile(name);
+  const base = starter(name);
   const nameplate = responseOf(base);
   if (nameplate === null) throw new Error(`${name} has no nameplate`);
   const period = base.controller.period;
