@@ -42,7 +42,7 @@ function open(words: readonly string[], env: Record<string, string> = {}, size =
     ended,
     /** Waits until what was sent matches; polls, never sleeps for a fixed time. */
     shows: async (pattern: RegExp) => {
-      while (!pattern.test(raw)) await new Promise((resolve) => setTimeout(resolve, 10));
+      while (!pattern.test(plain(raw))) await new Promise((resolve) => setTimeout(resolve, 10));
     },
     cursorRow: () => screen.buffer.active.cursorY,
     cursorColumn: () => screen.buffer.active.cursorX,
@@ -149,7 +149,7 @@ describe('tune', () => {
     const resumed = open([...words, '--plant-is-simulated']);
     expect(await resumed.ended).toBe(0);
     expect(plain(resumed.raw())).toContain('Resuming run-0001 after trial 1');
-    expect(plain(resumed.raw())).toContain('Target met after');
+    expect(plain(resumed.raw())).toContain('Target met, after');
   });
 
   test('Ctrl-C at a checklist ends with 130, and nothing was powered', async () => {
