@@ -89,7 +89,19 @@ function planProof(situation: Situation, last: Last): Plan {
   });
 }
 
+/** Trials in which no model explains the motion before a person has to look. */
+const MOST_UNEXPLAINED = 4;
+
 function planMeasured(situation: Situation, last: Last): Plan {
+  if (situation.history.trials.length >= MOST_UNEXPLAINED) {
+    return {
+      kind: 'stop',
+      diagnosis: {
+        stopped: 'not explained',
+        why: 'No model of this kind of mechanism explains its motion, so no promise can be made. Look for a reversed sign, a slipping or wrongly wired sensor, something loose, or output that is not what the log says.',
+      },
+    };
+  }
   const step = measuredStep(situation.profile, last.trial, last.reading);
   const stage = step.gains.kd > 0 ? 'derivative' : step.gains.ki > 0 ? 'integral' : 'proportional';
   return finish(situation, {
@@ -166,7 +178,8 @@ function draftOf(situation: Situation, last: Last): Omit<Draft, 'stage' | 'gains
   return {
     move: nextMove(situation, last.trial),
     duration: rehearsalDuration(profile),
-    outputCap: nextCap(profile, last.trial.outputCap, last.reading.inBand),
+    // A model that explains nothing promises nothing: the cap does not rise on it.
+    outputCap: nextCap(profile, last.trial.outputCap, situation.learnt?.usable ? last.reading.inBand : false),
   };
 }
 

@@ -53,12 +53,14 @@ export function firstTrial(profile: Profile, prior: Prior, cap: number, attempt:
   };
 }
 
-/** The target's shortest move. */
+/** The target's shortest move; for a speed loop the one that starts slowest. */
 export function shortestMove(profile: Profile): readonly [from: number, to: number] {
   const moves = profile.target.moves.map(([from, to]) => {
     const straight = straightMove({ from, to }, profile.continuous);
     return [straight.from, straight.to] as const;
   });
+  // A speed loop's direction shows from rest only: the slowest start comes first there.
+  if (profile.quantity === 'speed') return [...moves].sort((a, b) => Math.abs(a[0]) - Math.abs(b[0]))[0] ?? [0, 0];
   const first = moves[0] ?? [0, 0];
   return moves.reduce((best, move) => (Math.abs(move[1] - move[0]) < Math.abs(best[1] - best[0]) ? move : best), first);
 }

@@ -15,13 +15,20 @@ import type { Samples } from '../../src/record/samples.ts';
 const folder = fileURLToPath(new URL('../fixtures/outside/', import.meta.url));
 const names = readdirSync(join(folder, 'profiles')).map((file) => file.replace(/\.json$/, ''));
 
-async function trialOf(name: string, profile: Profile, proposal: Proposal, trial: number): Promise<Samples> {
+async function trialOf(
+  name: string,
+  profile: Profile,
+  proposal: Proposal,
+  trial: number,
+  switches: readonly string[],
+): Promise<Samples> {
   const { stage, gains, move, duration, outputCap } = proposal;
   const child = spawn(process.execPath, [
     join(folder, 'simulator.mjs'),
     join(folder, 'mechanisms', `${name}.json`),
     '--seed',
     String(40 + trial),
+    ...switches,
   ]);
   child.stdin.end(
     JSON.stringify({
@@ -41,7 +48,7 @@ async function trialOf(name: string, profile: Profile, proposal: Proposal, trial
   return (await readLogBytes(Buffer.concat(pieces), `trial ${trial}`)).samples;
 }
 
-async function run(name: string) {
+async function run(name: string, switches: readonly string[] = []) {
   const profile = parseProfile(readFileSync(join(folder, 'profiles', `${name}.json`), 'utf8'), name);
   let history: RunHistory = { profile, trials: [], maxTrials: 12, minutesLeft: null, seed: 1 };
   for (;;) {
@@ -49,7 +56,7 @@ async function run(name: string) {
     if (step.kind === 'stop') return { name, step, trials: history.trials };
     const { stage, gains, move, outputCap, band } = step.proposal;
     const trial = history.trials.length + 1;
-    const samples = await trialOf(name, profile, step.proposal, trial);
+    const samples = await trialOf(name, profile, step.proposal, trial, switches);
     history = { ...history, trials: [...history.trials, { trial, stage, gains, move, outputCap, samples, band }] };
   }
 }
@@ -68,5 +75,14 @@ test('at least 8 of 10 mechanisms with other physics meet their target, in few t
   for (const { step } of runs) {
     for (const reading of step.reading.trials)
       expect(reading.verdicts.map((verdict) => verdict.is)).not.toContain('growing-swing');
+  }
+});
+
+test('a reversed machine is recognised by its first trial, in the closed loop', { timeout: 120_000 }, async () => {
+  for (const name of names) {
+    const { step, trials } = await run(name, ['--reversed']);
+    expect(step.outcome.met).toBe(false);
+    if (trials[0]?.move.from !== 0 && step.outcome.stopped === 'not explained') continue;
+    expect(`${name}: ${step.outcome.stopped} after ${trials.length}`).toBe(`${name}: reversed after 1`);
   }
 });

@@ -17,34 +17,43 @@ import {
   verdict,
 } from './look.ts';
 
-/** Moves against its output. */
+/**
+ * Moves against its output. What starts it and carries it is taken from the nameplate or a cautious guess, never from what was
+ * learnt: a reversed machine teaches nonsense.
+ */
 export const reversed: Rule = (look) => {
   const sent = fractions(look);
   if (sent === null || (look.profile.quantity === 'speed' && look.move.from !== 0)) return null;
   const { measured, time } = look.samples;
   const first = measured[0] ?? 0;
   const least = Math.max(noticeable(look), 0.03 * Math.abs(look.move.to - look.move.from));
-  const needed = breakawayOf(look) + holdOf(look);
-  let pushed = 0;
-  for (let row = 0; row < measured.length; row++) {
-    const way = wrapError((measured[row] ?? 0) - first, look.profile.continuous);
+  const needed = unlearntNeed(look);
+  const way = (row: number) => wrapError((measured[row] ?? 0) - first, look.profile.continuous);
+  const clear = measured.findIndex((_, row) => Math.abs(way(row)) >= least);
+  if (clear < 1) return null;
+  const gone = Math.sign(way(clear));
+  // Up to the first clear motion, and on until it has gone twice as far, it was pushed the other way.
+  let end = clear;
+  while (end + 1 < measured.length && Math.abs(way(end)) < 2 * least) end++;
+  for (let row = 0; row <= end; row++) {
     const push = sent[row] ?? 0;
-    const dt = (time[row + 1] ?? time[row] ?? 0) - (time[row] ?? 0);
-    pushed += Math.sign(push) * Math.max(0, Math.abs(push) - needed) * dt;
-    if (Math.abs(way) < least) continue;
-    // The first clear motion decides: pushed one way for a while, gone the other.
-    if (Math.sign(way) === Math.sign(push) || Math.abs(pushed) < 0.01 || Math.sign(pushed) !== Math.sign(push))
-      return null;
-    return verdict(
-      'reversed',
-      `Pushed with ${output(look, push * fullOutput(look.profile.controller))}, it moved ${amount(look, Math.abs(way))} the other way by ${seconds(time[row] ?? 0)}: the sign of the output or of the sensor is reversed.`,
-      'the first clear motion is against an output that was above breakaway and weight',
-      { output: push, moved: way },
-      [0, row],
-    );
+    if (Math.sign(push) === gone || (row < clear && Math.abs(push) < needed)) return null;
   }
-  return null;
+  const push = sent[Math.max(0, clear - 1)] ?? 0;
+  return verdict(
+    'reversed',
+    `Pushed with ${output(look, push * fullOutput(look.profile.controller))}, it moved ${amount(look, Math.abs(way(clear)))} the other way by ${seconds(time[clear] ?? 0)}: the sign of the output or of the sensor is reversed.`,
+    'from the start to well after the first clear motion, it goes against an output above breakaway and weight',
+    { output: push, moved: way(clear) },
+    [0, clear],
+  );
 };
+
+/** Output that starts and carries it, by the nameplate or a guess. */
+function unlearntNeed(look: Look): number {
+  const plain = { ...look, response: null };
+  return breakawayOf(plain) + holdOf(plain);
+}
 
 /** Output without motion: the motor does not act, or the sensor does not see it. */
 export const deaf: Rule = (look) => {
@@ -54,7 +63,8 @@ export const deaf: Rule = (look) => {
   const first = measured[0] ?? 0;
   const moved = measured.reduce((far, value) => Math.max(far, Math.abs(value - first)), 0);
   if (moved >= noticeable(look)) return null;
-  const needed = Math.max(0.12, 1.6 * breakawayOf(look)) + holdOf(look);
+  const plain = { ...look, response: null };
+  const needed = Math.max(0.12, 1.6 * breakawayOf(plain)) + holdOf(plain);
   let long = 0;
   let strongest = 0;
   for (let row = 0; row + 1 < time.length; row++) {
