@@ -163,7 +163,8 @@ function possibleStep(known: Look['response'], dt: number, look: Look): number {
 }
 
 function possibleSpeedStep(known: Look['response'], dt: number, look: Look): number {
-  if (known === null) return 0.6 * Math.abs(look.move.to - look.move.from);
+  // A light wheel read thirty times a second makes most of its move between two samples: only more than the move is a jump.
+  if (known === null) return 1.5 * Math.abs(look.move.to - look.move.from);
   return 4 * known.topSpeed * Math.min(1, dt / known.lag) + 0.15 * known.topSpeed;
 }
 
