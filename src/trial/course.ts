@@ -1,3 +1,4 @@
+import { wrapError } from '../controller/tick.ts';
 import type { Move } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
 
@@ -19,11 +20,6 @@ export interface Course {
  */
 export function straightMove(move: Move, continuous: number | null): Move {
   return continuous === null ? move : { from: move.from, to: move.from + wrapError(move.to - move.from, continuous) };
-}
-
-/** Brings an error into ±half the wrap width; as it is when nothing wraps. */
-export function wrapError(error: number, continuous: number | null): number {
-  return continuous === null ? error : error - continuous * Math.round(error / continuous);
 }
 
 /**

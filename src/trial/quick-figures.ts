@@ -1,6 +1,7 @@
 import { type ControllerSettings, fullOutput } from '../controller/settings.ts';
+import { wrapError } from '../controller/tick.ts';
 import type { Move } from '../mechanism/profile.ts';
-import { straightMove, wrapError } from './course.ts';
+import { straightMove } from './course.ts';
 import { DWELL, entryTime } from './figures.ts';
 import { reversalsOf } from './reversals.ts';
 import type { TrialColumns } from './runner.ts';

@@ -169,6 +169,18 @@ describe('a record', () => {
     expect(figures.riseTime).toBeCloseTo(0.24, 9);
   });
 
+  test('of exactly half a turn is measured the way the controller drives it', () => {
+    const log = samplesOf({
+      time: Array.from({ length: 101 }, (_, k) => k * 0.01),
+      measured: Array.from({ length: 101 }, (_, k) => Math.min(180, 4 * k)),
+      setpoint: 180,
+    });
+    const figures = figuresOf(log, { ...options(1), move: { from: 0, to: 180 }, continuous: 360 });
+    expect(figures.overshoot).toBe(0);
+    expect(figures.riseTime).toBeCloseTo(0.36, 9);
+    expect(figures.settlingTime).toBeCloseTo(0.4475, 9);
+  });
+
   test('of fewer than two rows is refused', () => {
     expect(() => figuresOf(samplesOf({ time: [0], measured: [0] }), options(0.02))).toThrow(RangeError);
   });

@@ -1,9 +1,9 @@
 import { fullOutput } from '../../controller/settings.ts';
+import { wrapError } from '../../controller/tick.ts';
 import { plantWith } from '../../mechanism/plant-of.ts';
 import { formatNumber } from '../../mechanism/quantity.ts';
 import { unitScale } from '../../mechanism/units.ts';
 import { respond } from '../../plant/respond.ts';
-import { wrapError } from '../course.ts';
 import {
   amount,
   breakawayOf,
