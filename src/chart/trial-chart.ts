@@ -41,7 +41,7 @@ export function trialChart(samples: Samples, options: TrialChartOptions): ChartS
 }
 
 /** The two edges of a band. */
-export function bandLines(band: Band): readonly Line[] {
+function bandLines(band: Band): readonly Line[] {
   return [
     { name: 'promised, 9 times in 10', role: 'band', time: band.time, value: band.low },
     { name: 'promised, 9 times in 10', role: 'band', time: band.time, value: band.high },

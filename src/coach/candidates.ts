@@ -4,7 +4,7 @@ import type { ResponseModel } from '../plant/response-model.ts';
 import { carryingGains, type LoopScales, loopScales } from './scales.ts';
 
 /** `count` values from low to high with equal ratios between them. */
-export function geometric(low: number, high: number, count: number): readonly number[] {
+function geometric(low: number, high: number, count: number): readonly number[] {
   if (count < 2 || low >= high) return [low];
   return Array.from({ length: count }, (_, k) => low * (high / low) ** (k / (count - 1)));
 }

@@ -1,16 +1,10 @@
 import type { Gains } from '../controller/settings.ts';
 import { maxSensitivityOf } from '../margin/of-response.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
-import type { PlantModel, ResponseModel } from '../plant/response-model.ts';
 import type { QuickFigures } from '../trial/quick-figures.ts';
 import type { Aim } from './aim.ts';
+import type { Draw } from './draws.ts';
 import type { Rehearsal } from './rehearsal.ts';
-
-/** One way that reality may be: a plant to rehearse on. */
-export interface Draw {
-  readonly response: ResponseModel;
-  readonly plant: PlantModel;
-}
 
 /** What a set of gains does over some draws and moves. */
 export interface Score {
@@ -37,7 +31,7 @@ const MOST_SENSITIVE = 2;
  * resting outside the tolerance, chatter and growing swing are charged in proportion to how far they are off, so that a
  * search has a slope to follow.
  */
-export function trialCost(quick: QuickFigures, aim: Aim): number {
+function trialCost(quick: QuickFigures, aim: Aim): number {
   let cost = quick.settlingTime ?? aim.duration * 1.2;
   if (quick.settlingTime === null) cost += 0.3 * aim.duration * Math.min(4, Math.abs(quick.endError) / aim.tolerance);
   const excess = quick.overshoot - aim.overshoot;
@@ -51,7 +45,7 @@ export function trialCost(quick: QuickFigures, aim: Aim): number {
 const MOST_CHATTER = 8;
 
 /** Does a rehearsed trial meet the aim? */
-export function meetsAim(quick: QuickFigures, aim: Aim): boolean {
+function meetsAim(quick: QuickFigures, aim: Aim): boolean {
   return (
     quick.settlingTime !== null &&
     quick.settlingTime <= aim.settlingTime &&

@@ -2,15 +2,13 @@ import { learn } from '../learn/learn.ts';
 import type { LearntModel } from '../learn/learnt.ts';
 import { priorOf } from '../learn/prior.ts';
 import { hopelessProfile, hopelessVerdict } from './diagnosis.ts';
+import { DRAWS } from './draws.ts';
 import { endOfRun, metOutcome, stoppedOutcome } from './outcome.ts';
 import { planTrial } from './plan.ts';
 import { readTrials } from './reading.ts';
 import { bestProven, lastOf, type Situation, unprovenMoves } from './situation.ts';
 import type { CoachStep, RunHistory, RunReading } from './step.ts';
 import { trustOf } from './trust.ts';
-
-/** Posterior draws that search, promise and safety share. */
-const DRAWS = 64;
 
 /**
  * What to do after the trials so far: the next trial with its reason and promise, or the end of the run with the reason.
@@ -40,7 +38,7 @@ export function nextStep(history: RunHistory): CoachStep {
 }
 
 /** Works out what one decision rests on. */
-export function situationOf(history: RunHistory): Situation {
+function situationOf(history: RunHistory): Situation {
   const prior = priorOf(history.profile);
   const learnt = learntFrom(history);
   const readings = readTrials(history, learnt);

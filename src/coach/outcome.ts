@@ -4,7 +4,8 @@ import { marginsOf } from '../margin/of-response.ts';
 import { formatNumber } from '../mechanism/quantity.ts';
 import type { Diagnosis } from './diagnosis.ts';
 import { amount, outputText } from './reasons.ts';
-import { bestProven, lastOf, provenMoves, type Situation } from './situation.ts';
+import { sameGains } from './search.ts';
+import { bestProven, lastOf, provenMoves, type Situation, sameMove } from './situation.ts';
 import type { Outcome } from './step.ts';
 
 /** Minutes that one more trial takes at the side of a field: place it, tick the list, run, read. Common practice, no source. */
@@ -60,7 +61,7 @@ export function endOfRun(situation: Situation): Diagnosis | null {
 }
 
 /** By how much the last trial missed the target, and which limit stands in the way. */
-export function shortfall(situation: Situation): string {
+function shortfall(situation: Situation): string {
   const last = lastOf(situation);
   if (last === null) return 'No trial was run.';
   const { profile, learnt } = situation;
@@ -107,8 +108,8 @@ function worstProof(situation: Situation, gains: Gains): number | null {
   const proven = provenMoves(situation, gains);
   const times = situation.history.trials.flatMap((trial, index) => {
     const time = situation.readings[index]?.figures.settlingTime ?? null;
-    const counts = proven.some((move) => move.from === trial.move.from && move.to === trial.move.to);
-    return counts && trial.gains === gains && time !== null ? [time] : [];
+    const counts = proven.some((move) => sameMove(move, trial.move));
+    return counts && sameGains(trial.gains, gains) && time !== null ? [time] : [];
   });
   return times.length === 0 ? null : Math.max(...times);
 }

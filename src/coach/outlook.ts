@@ -2,7 +2,8 @@ import type { Gains } from '../controller/settings.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import { derivativeCandidates, integralVariants, proportionalCandidates } from './candidates.ts';
-import { type Draw, type Ground, type Score, scoreOf } from './evaluate.ts';
+import type { Draw } from './draws.ts';
+import { type Ground, type Score, scoreOf } from './evaluate.ts';
 import { carryingTerms, kdLimit } from './scales.ts';
 import { bestOf, clampGains, type Found, type Freed, type GainBounds, refine } from './search.ts';
 
@@ -35,12 +36,7 @@ export interface SearchGround {
  *
  * A space-filling set on the best estimate; the best few refined over a few draws; the finalists ranked over many.
  */
-export function searchFrom(
-  candidates: readonly Gains[],
-  freed: Freed,
-  bounds: GainBounds,
-  search: SearchGround,
-): Choice {
+function searchFrom(candidates: readonly Gains[], freed: Freed, bounds: GainBounds, search: SearchGround): Choice {
   const { ground, draws, effort } = search;
   const on = (count: number) => (gains: Gains) => scoreOf(gains, draws.slice(0, count), ground).cost;
   const inside = candidates.map((gains) => clampGains(gains, bounds));

@@ -1,10 +1,10 @@
 import type { LearntModel } from '../learn/learnt.ts';
-import { plantWith } from '../mechanism/plant-of.ts';
 import type { Move } from '../mechanism/profile.ts';
 import { firstCap, nextCap } from '../safety/cap.ts';
 import { aimOf, rehearsalDuration } from './aim.ts';
 import type { Diagnosis } from './diagnosis.ts';
-import type { Draw, Ground } from './evaluate.ts';
+import { drawsOf } from './draws.ts';
+import type { Ground } from './evaluate.ts';
 import { measuredStep } from './fallback.ts';
 import {
   type Choice,
@@ -23,7 +23,7 @@ import { derivativeWhy, integralWhy, proofWhy, proportionalWhy, readyWhy } from 
 import { rehearsalOf } from './rehearsal.ts';
 import { kdLimit } from './scales.ts';
 import { lastOf, provenMoves, type Situation, sameMove, targetMoves, trialsIn, unprovenMoves } from './situation.ts';
-import { nextStage, type Outlook } from './stage.ts';
+import { nextStage, type Outlook, PROMISING } from './stage.ts';
 import type { Proposal, TrialReading, TrialRecord } from './step.ts';
 import { trustedBounds } from './trust.ts';
 
@@ -39,15 +39,14 @@ export function planTrial(situation: Situation): Plan {
   const { learnt } = situation;
   if (last === null || learnt === null || readyAgain(situation, last)) return planReady(situation);
   if (provesOnwards(situation, last)) return planProof(situation, last);
-  const search = searchGround(situation, learnt);
   if (!learnt.usable) return planMeasured(situation, last);
-  return planSearched(situation, learnt, last, search);
+  return planSearched(situation, learnt, last, searchGround(situation, learnt));
 }
 
 type Last = { readonly trial: TrialRecord; readonly reading: TrialReading };
 
 /** A first move that showed nothing is repeated with more output, as far as the cap of the profile goes. */
-export function readyAgain(situation: Situation, last: Last): boolean {
+function readyAgain(situation: Situation, last: Last): boolean {
   if (last.trial.stage !== 'ready' || trialsIn(situation, 'ready') >= MOST_READY) return false;
   if (last.trial.outputCap >= situation.profile.limits.outputCap) return false;
   return !movedEnough(situation, last.trial);
@@ -122,14 +121,13 @@ function planSearched(situation: Situation, learnt: LearntModel, last: Last, sea
   const outlook: Outlook = {
     proportionalMeets: proportional.score.meets,
     needsIntegral: destination.gains.ki > 0,
-    needsDerivative: destination.gains.kd > 0,
   };
   const choice = nextStage(situation, outlook);
   const draft = draftOf(situation, last);
   const because = choice.because === null ? '' : `${choice.because} `;
   switch (choice.stage) {
     case 'proportional': {
-      const final = proportional.score.meets >= 0.7;
+      const final = proportional.score.meets >= PROMISING;
       // On the way to the full set: its Kp, as far as P alone can be let run with it.
       const kp = final
         ? proportional.gains.kp
@@ -197,9 +195,8 @@ function nextMove(situation: Situation, last: TrialRecord): Move {
 
 function searchGround(situation: Situation, learnt: LearntModel): SearchGround {
   const { profile } = situation;
-  const draws = drawsOf(situation, learnt);
+  const draws = drawsOf(profile, [learnt.response, ...learnt.draws]);
   const aim = aimOf(situation);
-  const exact = profile.kind !== 'arm' && draws[0]?.plant.coupling === null;
   const ground: Ground = {
     profile,
     aim,
@@ -207,14 +204,5 @@ function searchGround(situation: Situation, learnt: LearntModel): SearchGround {
     outputCap: profile.limits.outputCap,
     rehearsal: rehearsalOf(profile, aim.duration, aim.tolerance, situation.history.seed),
   };
-  return { ground, draws, effort: exact ? FULL_EFFORT : THRIFTY_EFFORT };
-}
-
-/** The best estimate and the posterior draws as plants. */
-export function drawsOf(situation: Situation, learnt: LearntModel | null): readonly Draw[] {
-  const responses = learnt === null ? [situation.prior.response] : [learnt.response, ...learnt.draws];
-  return responses.map((response) => ({
-    response,
-    plant: { ...plantWith(situation.profile, response), coupling: null },
-  }));
+  return { ground, draws, effort: profile.kind === 'arm' ? THRIFTY_EFFORT : FULL_EFFORT };
 }

@@ -1,13 +1,10 @@
 import type { Gains } from '../controller/settings.ts';
 import { predict } from '../learn/predict.ts';
-import { drawPrior } from '../learn/prior.ts';
-import { plantWith } from '../mechanism/plant-of.ts';
 import type { Move } from '../mechanism/profile.ts';
 import type { Stage } from '../trial/trial.ts';
 import type { Diagnosis } from './diagnosis.ts';
-import type { Draw } from './evaluate.ts';
+import { type Draw, drawsOf, knownResponses } from './draws.ts';
 import { marginsFor } from './outcome.ts';
-import { machineKnown } from './ready.ts';
 import { expectText, unlessText } from './reasons.ts';
 import { rehearsalOf } from './rehearsal.ts';
 import { makeSafe } from './safe.ts';
@@ -31,14 +28,11 @@ export function finish(
   draft: Draft,
 ): { readonly kind: 'trial'; readonly proposal: Proposal } | { readonly kind: 'stop'; readonly diagnosis: Diagnosis } {
   const { profile, learnt, prior } = situation;
-  const promised = learnt !== null || machineKnown(prior);
-  const responses = learnt?.draws ?? drawPrior(prior, 64, situation.history.seed);
-  const draws: readonly Draw[] = responses.map((response) => ({
-    response,
-    plant: { ...plantWith(profile, response), coupling: null },
-  }));
+  const responses = knownResponses(learnt, prior, situation.history.seed);
+  // Nothing known: nothing to rehearse on, and nothing promised.
+  const draws = responses === null ? null : drawsOf(profile, responses);
   const rehearsal = rehearsalOf(profile, draft.duration, profile.target.tolerance, situation.history.seed);
-  const safe = promised ? makeSafe(profile, draws, rehearsal, draft) : { gains: draft.gains, bounded: null };
+  const safe = draws === null ? { gains: draft.gains, bounded: null } : makeSafe(profile, draws, rehearsal, draft);
   if (safe === null) {
     return {
       kind: 'stop',
@@ -50,19 +44,20 @@ export function finish(
   }
   const { gains } = safe;
   const trial = { ...draft, gains };
-  const expected = promised ? expectedOf(draws, rehearsal, trial) : null;
-  const band = promised
-    ? predict({
-        profile,
-        draws: responses,
-        residual: learnt?.residual ?? 0,
-        gains,
-        move: draft.move,
-        duration: draft.duration,
-        outputCap: draft.outputCap,
-        seed: situation.history.seed,
-      }).band
-    : null;
+  const expected = draws === null ? null : expectedOf(draws, rehearsal, trial);
+  const band =
+    responses === null
+      ? null
+      : predict({
+          profile,
+          draws: responses,
+          residual: learnt?.residual ?? 0,
+          gains,
+          move: draft.move,
+          duration: draft.duration,
+          outputCap: draft.outputCap,
+          seed: situation.history.seed,
+        }).band;
   return {
     kind: 'trial',
     proposal: {

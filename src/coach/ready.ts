@@ -54,7 +54,7 @@ export function firstTrial(profile: Profile, prior: Prior, cap: number, attempt:
 }
 
 /** The target's shortest move; for a speed loop the one that starts slowest. */
-export function shortestMove(profile: Profile): readonly [from: number, to: number] {
+function shortestMove(profile: Profile): readonly [from: number, to: number] {
   const moves = profile.target.moves.map(([from, to]) => {
     const straight = straightMove({ from, to }, profile.continuous);
     return [straight.from, straight.to] as const;

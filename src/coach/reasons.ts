@@ -21,7 +21,7 @@ export function amount(value: number, profile: Profile): string {
   return formatQuantity(value, profile.unit, profile.sensor?.resolution ?? 0);
 }
 
-export function moveText(move: Move, profile: Profile): string {
+function moveText(move: Move, profile: Profile): string {
   return `${amount(move.from, profile)} to ${amount(move.to, profile)}`;
 }
 

@@ -1,6 +1,6 @@
 import type { Gains } from '../controller/settings.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
-import type { Draw } from './evaluate.ts';
+import type { Draw } from './draws.ts';
 import type { Rehearsal } from './rehearsal.ts';
 
 /** Share of draws that must stay inside the travel limits with no growing swing; design's safety, Gate (3). */
@@ -51,7 +51,7 @@ function leaves(measured: Float64Array, rows: number, profile: Profile, move: Mo
 }
 
 /**
- * Backs gains off until the rehearsal is safe: Kp, Ki and Kd by a fifth at a time.
+ * Backs gains off until the rehearsal is safe: each time Kp by a fifth, Ki by two, Kd by a tenth.
  *
  * @returns the first safe set, or null when none of them is
  */

@@ -17,7 +17,7 @@ export interface LoopScales {
 }
 
 /** All that delays a loop beyond the mechanism's own lag, s. */
-export function deadTime(response: ResponseModel, profile: Profile): number {
+function deadTime(response: ResponseModel, profile: Profile): number {
   return response.delay + (profile.sensor?.delay ?? 0) + profile.controller.period;
 }
 
@@ -57,12 +57,6 @@ function steadyOutputPerUnit(response: ResponseModel, profile: Profile): number 
   if (speeds.length === 0) return 1 / response.topSpeed;
   const share = speeds.reduce((sum, speed) => sum + response.drag / speed, 0) / speeds.length;
   return 1 / response.topSpeed + share;
-}
-
-/** Output per count that the derivative makes of one step of the sensor: kd·q/T, before any filter; output unit. */
-export function derivativeStep(kd: number, profile: Profile): number {
-  const { period, derivativeFilter } = profile.controller;
-  return (kd * (profile.sensor?.resolution ?? 0)) / (period + derivativeFilter);
 }
 
 /** Largest kd whose answer to one count of the sensor stays under 6 % of full output; infinite for a smooth sensor. */

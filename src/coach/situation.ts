@@ -33,7 +33,7 @@ export function sameMove(a: Move, b: Move): boolean {
 }
 
 /** Does a trial count as proof of the gains: the target met on one of its moves, with all the output it will have? */
-export function countsAsProof(situation: Situation, index: number): boolean {
+function countsAsProof(situation: Situation, index: number): boolean {
   const trial = situation.history.trials[index];
   const reading = situation.readings[index];
   if (!trial || !reading?.meets) return false;

@@ -14,11 +14,11 @@ export interface Outlook {
   readonly proportionalMeets: number;
   /** Does the best full set use an integral? */
   readonly needsIntegral: boolean;
-  /** Does the best full set use a derivative? */
-  readonly needsDerivative: boolean;
 }
 
-const PROMISING = 0.7;
+/** Share of draws and moves that must meet the aim before P alone is taken for enough. */
+export const PROMISING = 0.7;
+
 const MOST_PROPORTIONAL = 3;
 const MOST_INTEGRAL = 2;
 

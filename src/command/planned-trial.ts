@@ -1,12 +1,11 @@
-import { machineKnown } from '../coach/ready.ts';
+import { knownResponses } from '../coach/draws.ts';
 import { rehearsalOf } from '../coach/rehearsal.ts';
 import { checkSafety } from '../coach/safe.ts';
 import type { Proposal } from '../coach/step.ts';
 import type { LearntModel } from '../learn/learnt.ts';
-import { drawPrior, priorOf } from '../learn/prior.ts';
+import { priorOf } from '../learn/prior.ts';
 import { plantWith } from '../mechanism/plant-of.ts';
 import type { Profile } from '../mechanism/profile.ts';
-import type { ResponseModel } from '../plant/response-model.ts';
 import type { Checklist } from '../safety/hazard.ts';
 import { hazardFiguresOf } from '../safety/hazards.ts';
 import { checklistOf } from '../safety/items.ts';
@@ -19,8 +18,6 @@ export interface TrialDangers {
   readonly growing: number | null;
 }
 
-const DRAWS = 64;
-
 /** Works out the dangers of a proposed trial over all that is known of the machine: its logs, else its nameplate. */
 export function dangersOf(
   profile: Profile,
@@ -28,22 +25,11 @@ export function dangersOf(
   proposal: Proposal,
   seed: number,
 ): TrialDangers {
-  const responses = knownResponses(profile, learnt, seed);
+  const responses = knownResponses(learnt, priorOf(profile), seed);
   const checklist = checklistOf(profile, hazardFiguresOf(profile, responses, proposal), proposal);
   if (responses === null) return { checklist, outside: null, growing: null };
   const draws = responses.map((response) => ({ response, plant: plantWith(profile, response) }));
   const rehearsal = rehearsalOf(profile, proposal.duration, profile.target.tolerance, seed);
   const { outside, growing } = checkSafety(profile, draws, rehearsal, proposal);
   return { checklist, outside, growing };
-}
-
-/** What the machine may be: drawn from its logs, else from its nameplate; null when neither says anything. */
-export function knownResponses(
-  profile: Profile,
-  learnt: LearntModel | null,
-  seed: number,
-): readonly ResponseModel[] | null {
-  if (learnt !== null) return learnt.draws;
-  const prior = priorOf(profile);
-  return machineKnown(prior) ? drawPrior(prior, DRAWS, seed) : null;
 }

@@ -1,6 +1,7 @@
 import { drawChart } from '../chart/draw.ts';
 import { promiseChart } from '../chart/trial-chart.ts';
 import { rehearsalDuration } from '../coach/aim.ts';
+import { knownResponses } from '../coach/draws.ts';
 import type { Gains } from '../controller/settings.ts';
 import { learn } from '../learn/learn.ts';
 import type { LearntModel } from '../learn/learnt.ts';
@@ -28,7 +29,6 @@ import { unusable, wrongUse } from './failure.ts';
 import { findProfile } from './find-profile.ts';
 import { addLogOptions, type LogOptions, readOptionsOf } from './log-options.ts';
 import { openLog } from './open-log.ts';
-import { knownResponses } from './planned-trial.ts';
 import { withProgress } from './progress.ts';
 import { CHART_ROWS } from './trial-page.ts';
 import { addGainOptions, gainsTyped, type TypedGains } from './typed-gains.ts';
@@ -84,7 +84,7 @@ async function predictResponse(name: string, options: PredictOptions, context: C
   const move = options.move ?? firstMove(profile);
   const seed = context.seed ?? 1;
   const learnt = options.log === undefined ? null : await learntFrom(options.log, options, profile, seed, context);
-  const responses = knownResponses(profile, learnt, seed);
+  const responses = knownResponses(learnt, priorOf(profile), seed);
   if (responses === null) {
     throw unusable(
       `nothing is known of the machine of "${profile.name}", so nothing can be predicted.`,

@@ -1,5 +1,5 @@
 import type { Gains } from '../controller/settings.ts';
-import { plantWith } from '../mechanism/plant-of.ts';
+import { rigidPlants } from '../mechanism/plant-of.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
 import type { ResponseModel } from '../plant/response-model.ts';
 import type { Band } from '../record/band.ts';
@@ -48,8 +48,8 @@ export function predict(request: PredictRequest): Prediction {
     lostBeyond: null,
   });
   const rows = runner.columns.time.length;
-  const courses = draws.map((response) => {
-    runner.run({ ...plantWith(profile, response), coupling: null }, request.gains, move, request.outputCap);
+  const courses = rigidPlants(profile, draws).map((plant) => {
+    runner.run(plant, request.gains, move, request.outputCap);
     return { measured: runner.columns.measured.slice(0, rows), output: runner.columns.output.slice(0, rows) };
   });
   // What a fit leaves holds the sensor's noise and steps already; before any fit they stand alone.

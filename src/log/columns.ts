@@ -119,7 +119,7 @@ function indexOf(headers: readonly string[], wish: string): number {
   return number < headers.length ? number : -1;
 }
 
-export const listed = (headers: readonly string[]): string => headers.slice(0, 30).map(printable).join(', ');
+const listed = (headers: readonly string[]): string => headers.slice(0, 30).map(printable).join(', ');
 
 /** Best header for a role that nothing else has taken. */
 function guess(

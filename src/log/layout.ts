@@ -85,7 +85,7 @@ function isNumeric(cells: readonly string[], delimiter: string): boolean {
 }
 
 /** Splits one line as a parser would that knows quotes; for looking only. */
-export function splitLine(line: string, delimiter: string): readonly string[] {
+function splitLine(line: string, delimiter: string): readonly string[] {
   if (delimiter === 'blank') return line.trim() === '' ? [] : line.trim().split(/[ \t]+/);
   if (!line.includes('"')) return line.split(delimiter);
   const cells: string[] = [];

@@ -125,7 +125,8 @@ async function reading(open: () => TextSource, options: ReadOptions): Promise<Lo
     );
   }
   const warnings = [...shape.warnings];
-  const samples = scaled(rows.samples(), shape.columns, warnings);
+  const raw = rows.samples();
+  const samples = scaled(raw, shape.columns, warnings);
   const period = medianSpacing(samples.time);
   return {
     file: source.name,
@@ -133,7 +134,7 @@ async function reading(open: () => TextSource, options: ReadOptions): Promise<Lo
     rows: gathered.rows,
     duration: (samples.time.at(-1) ?? 0) - (samples.time[0] ?? 0),
     period,
-    columns: withTimeScale(shape.columns, samples.time, rows.samples().time),
+    columns: withTimeScale(shape.columns, samples.time, raw.time),
     moves: splitMoves(samples),
     repairs: repairsOf(gathered),
     warnings: [...warnings, ...noticesOf(gathered)],
@@ -181,7 +182,7 @@ function withTimeScale(columns: Columns, seconds: Float64Array, raw: Float64Arra
   return { ...columns, time: { ...columns.time, scale: Number(scale.toPrecision(6)) } };
 }
 
-export function medianSpacing(time: Float64Array): number {
+function medianSpacing(time: Float64Array): number {
   if (time.length < 2) return 0;
   const steps = new Float64Array(time.length - 1);
   for (let row = 0; row < steps.length; row++) steps[row] = (time[row + 1] ?? 0) - (time[row] ?? 0);

@@ -4,12 +4,6 @@ export interface Complex {
   readonly im: number;
 }
 
-export const complex = (re: number, im = 0): Complex => ({ re, im });
-export const add = (a: Complex, b: Complex): Complex => ({ re: a.re + b.re, im: a.im + b.im });
-export const multiply = (a: Complex, b: Complex): Complex => ({
-  re: a.re * b.re - a.im * b.im,
-  im: a.re * b.im + a.im * b.re,
-});
 export const divide = (a: Complex, b: Complex): Complex => {
   const size = b.re * b.re + b.im * b.im;
   return { re: (a.re * b.re + a.im * b.im) / size, im: (a.im * b.re - a.re * b.im) / size };

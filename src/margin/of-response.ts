@@ -23,7 +23,7 @@ export interface LoopOf {
 }
 
 /** The sampled open loop, drag and limits off. */
-export function openLoopOf(loop: LoopOf): SampledLoop {
+function openLoopOf(loop: LoopOf): SampledLoop {
   const { response, quantity, gains, settings } = loop;
   const plant = sampledPlant(response, quantity, settings.period, response.delay + loop.sensorDelay);
   return inSeries(sampledController(gains, settings), plant);

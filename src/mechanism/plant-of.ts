@@ -70,7 +70,7 @@ export function plantModelOf(profile: Profile): PlantModel | null {
  * What of a plant does not depend on its response model: quantity, gravity and stops. With a learnt response, a stiff supply
  * and no coupling it makes a plant for a profile whose machine numbers are unknown.
  */
-export function boundsOf(profile: Profile): Pick<PlantModel, 'quantity' | 'gravity' | 'stops'> {
+function boundsOf(profile: Profile): Pick<PlantModel, 'quantity' | 'gravity' | 'stops'> {
   const { min, max } = profile.limits;
   return {
     quantity: profile.quantity,
@@ -84,7 +84,19 @@ export function boundsOf(profile: Profile): Pick<PlantModel, 'quantity' | 'gravi
  * limit and coupling.
  */
 export function plantWith(profile: Profile, response: ResponseModel): PlantModel {
-  const nameplate = plantModelOf(profile);
-  if (nameplate) return { ...nameplate, response };
-  return { ...boundsOf(profile), response, sag: 0, forceLimit: null, coupling: null };
+  return { ...framePlant(profile), response };
+}
+
+/**
+ * Plants that answer as each response says, with lost motion and spring left out: what is rehearsed and promised by the hundred.
+ * The profile's own part is worked out once.
+ */
+export function rigidPlants(profile: Profile, responses: readonly ResponseModel[]): readonly PlantModel[] {
+  const frame = framePlant(profile);
+  return responses.map((response) => ({ ...frame, response, coupling: null }));
+}
+
+/** All of a plant but its response. */
+function framePlant(profile: Profile): Omit<PlantModel, 'response'> {
+  return plantModelOf(profile) ?? { ...boundsOf(profile), sag: 0, forceLimit: null, coupling: null };
 }

@@ -4,7 +4,7 @@ import { inconsistencyOf } from './consistency.ts';
 import { ProfileError } from './error.ts';
 import { profileSchema } from './schema.ts';
 
-export const PROFILE_FORMAT = 'holdfast/profile@1';
+const PROFILE_FORMAT = 'holdfast/profile@1';
 
 /** Characters that no honest profile reaches. */
 const LONGEST = 1 << 20;

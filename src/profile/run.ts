@@ -7,7 +7,7 @@ import { digestOf, readIfThere, withLock, writeDurably } from './files.ts';
 import type { Store } from './store.ts';
 
 /** holdfast/run@1: one pass through the stages, kept after every trial so that it resumes where it was. */
-export const RUN_FORMAT = 'holdfast/run@1';
+const RUN_FORMAT = 'holdfast/run@1';
 
 const gains = z.looseObject({
   kp: z.number(),
@@ -101,7 +101,7 @@ export async function listRuns(store: Store, profile: string): Promise<readonly 
 }
 
 /** @throws {ProfileError} when it is missing or cannot be used */
-export async function readRun(store: Store, profile: string, id: string): Promise<KeptRun> {
+async function readRun(store: Store, profile: string, id: string): Promise<KeptRun> {
   const path = runPath(store, { profile, id });
   const text = await readIfThere(path);
   const file = `trials/${profile}/${id}/run.json`;

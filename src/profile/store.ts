@@ -1,4 +1,4 @@
-import { readdir, rm } from 'node:fs/promises';
+import { readdir } from 'node:fs/promises';
 import { join } from 'node:path';
 import type { Profile } from '../mechanism/profile.ts';
 import { printable } from '../record/printable.ts';
@@ -111,12 +111,6 @@ export async function updateProfile(
       });
     return write(path, after);
   });
-}
-
-/** Removes a profile's file; its trials stay. */
-export async function removeProfile(store: Store, name: string): Promise<void> {
-  const path = profilePath(store, name);
-  await withLock(store.folder, async () => rm(path, { force: true }));
 }
 
 /** Clears what killed processes left behind. @param now ms since the epoch */

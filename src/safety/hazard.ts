@@ -50,8 +50,6 @@ export interface Signature {
   readonly profileDigest: string;
 }
 
-export type GateAnswer = { readonly open: true } | { readonly open: false; readonly reasons: readonly GateRefusal[] };
-
 export interface GateRefusal {
   readonly rule:
     | 'limits'

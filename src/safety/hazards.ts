@@ -1,5 +1,5 @@
 import { fullOutput, type Gains } from '../controller/settings.ts';
-import { plantWith } from '../mechanism/plant-of.ts';
+import { rigidPlants } from '../mechanism/plant-of.ts';
 import type { Move, Profile } from '../mechanism/profile.ts';
 import { respond } from '../plant/respond.ts';
 import type { PlantModel, ResponseModel } from '../plant/response-model.ts';
@@ -90,10 +90,9 @@ function excursionsOf(profile: Profile, draws: readonly ResponseModel[], trial: 
     parts: 'left out',
   });
   const of = profile.quantity === 'speed' ? speedExcursion : excursion;
-  return draws.map((response) => {
-    const free = { ...plantWith(profile, response), stops: { min: null, max: null }, coupling: null };
-    return of(profile, free, runner, trial);
-  });
+  return rigidPlants(profile, draws).map((plant) =>
+    of(profile, { ...plant, stops: { min: null, max: null } }, runner, trial),
+  );
 }
 
 /**

@@ -56,8 +56,12 @@ export const DWELL = 0.25;
  */
 export function figuresOf(samples: Samples, asked: FigureOptions): Figures {
   const options = { ...asked, move: straightMove(asked.move, asked.continuous) };
+  return figuresAlong(courseOf(samples, options.move, options.continuous), samples, options);
+}
+
+/** {@link figuresOf} of a straight move whose course is already worked out; refuses what that refuses. */
+export function figuresAlong(course: Course, samples: Samples, options: FigureOptions): Figures {
   if (samples.time.length < 2) throw new RangeError('a move needs at least two rows to be measured');
-  const course = courseOf(samples, options.move, options.continuous);
   const size = Math.abs(options.move.to - options.move.from) || 1;
   const start = Math.max(0, course.time[0] ?? 0);
   const settlingTime = settlingTimeOf(course, options, start);

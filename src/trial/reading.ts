@@ -2,7 +2,7 @@ import { fullOutput } from '../controller/settings.ts';
 import type { Profile } from '../mechanism/profile.ts';
 import type { Samples } from '../record/samples.ts';
 import { courseOf, straightMove } from './course.ts';
-import { type Figures, figuresOf } from './figures.ts';
+import { type Figures, figuresAlong } from './figures.ts';
 import type { Verdict } from './verdict.ts';
 import { overshoots, settled, slow, stuckShort } from './verdicts/ending.ts';
 import type { Look, Rule } from './verdicts/look.ts';
@@ -54,7 +54,8 @@ export function readTrial(samples: Samples, context: ReadingContext): Reading {
   const { profile } = context;
   const move = straightMove(context.move, profile.continuous);
   const full = fullOutput(profile.controller);
-  const figures = figuresOf(samples, {
+  const course = courseOf(samples, move, profile.continuous);
+  const figures = figuresAlong(course, samples, {
     move,
     tolerance: profile.target.tolerance,
     continuous: profile.continuous,
@@ -62,7 +63,7 @@ export function readTrial(samples: Samples, context: ReadingContext): Reading {
     fullOutput: full,
     resolution: profile.sensor?.resolution ?? 0,
   });
-  const look: Look = { ...context, move, samples, figures, course: courseOf(samples, move, profile.continuous) };
+  const look: Look = { ...context, move, samples, figures, course };
   const verdicts = RULES.flatMap((rule) => rule(look) ?? []);
   return { figures, verdicts, meets: meetsTarget(figures, verdicts, profile, move) };
 }

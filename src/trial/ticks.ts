@@ -2,7 +2,7 @@ import { normalNumbers } from './chance.ts';
 import type { Reading } from './trial.ts';
 
 /** Rows of a trial with even ticks: one at 0 and one at the end of each period that fits. */
-export function evenRows(duration: number, period: number): number {
+function evenRows(duration: number, period: number): number {
   return Math.floor(duration / period + 1e-9) + 1;
 }
 
